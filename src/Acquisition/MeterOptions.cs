@@ -1,0 +1,101 @@
+using System.ComponentModel;
+
+namespace Lampwarden.Acquisition;
+
+/// <summary>One meter as the configuration describes it. Key names are contract; see config/ for the schema.</summary>
+public sealed class MeterOptions
+{
+    /// <summary>Name shown in messages; unique within a bench.</summary>
+    public string Name { get; set; } = "";
+
+    /// <summary>What it measures: lineCurrent (A) or mainsVoltage (V).</summary>
+    public Quantity Quantity { get; set; }
+
+    /// <summary>The wire to it.</summary>
+    public TransportOptions Transport { get; set; } = new();
+
+    /// <summary>The language it speaks.</summary>
+    public ProtocolOptions Protocol { get; set; } = new();
+
+    /// <summary>Polls a second for scpi, the pace to expect for lines; 0.1 to 100.</summary>
+    public double ReadingsPerSecond { get; set; } = 2;
+
+    /// <summary>Length of the meter's measuring window in seconds, ending when the answer is sent; 0.001 to 10.</summary>
+    public double WindowSeconds { get; set; } = 0.2;
+
+    /// <summary>ac or acDc: an AC-coupled meter does not see a half-wave short for what it is.</summary>
+    public string Coupling { get; set; } = "ac";
+
+    /// <summary>trueRms, firstOrder or meanResponding.</summary>
+    public string Response { get; set; } = "trueRms";
+
+    /// <summary>The maker's bound on its error.</summary>
+    public AccuracyOptions Accuracy { get; set; } = new();
+
+    /// <summary>Seconds to wait for an answer before the poll becomes a gap; 0.05 to 60, in real time even in a rehearsal.</summary>
+    public double ReplyTimeoutSeconds { get; set; } = 1;
+}
+
+/// <summary>A meter's stated accuracy: a bound of percent of reading plus counts, as makers print it.</summary>
+public sealed class AccuracyOptions
+{
+    /// <summary>Percent of reading, 0 to 20.</summary>
+    public double PercentOfReading { get; set; } = 1.0;
+
+    /// <summary>Counts to add, 0 to 1000.</summary>
+    public double Counts { get; set; } = 3;
+
+    /// <summary>Size of one count in A or V; above 0.</summary>
+    public double CountSize { get; set; } = 0.001;
+}
+
+/// <summary>serial (System.IO.Ports) or tcp.</summary>
+public sealed class TransportOptions
+{
+    /// <summary>serial or tcp.</summary>
+    public string Kind { get; set; } = "serial";
+
+    /// <summary>Serial: device path or name. Tcp: number of the port, 1 to 65535.</summary>
+    public string Port { get; set; } = "";
+
+    /// <summary>Tcp: name or address of the meter or of the terminal server before it.</summary>
+    public string Host { get; set; } = "127.0.0.1";
+
+    /// <summary>Serial only.</summary>
+    public int BaudRate { get; set; } = 9600;
+
+    /// <summary>Serial only, 5 to 8.</summary>
+    public int DataBits { get; set; } = 8;
+
+    /// <summary>Serial only: none, odd, even, mark or space.</summary>
+    public string Parity { get; set; } = "none";
+
+    /// <summary>Serial only: 1, 1.5 or 2.</summary>
+    public double StopBits { get; set; } = 1;
+
+    /// <summary>Serial only: drive DTR to power an isolated cable; null leaves the line alone.</summary>
+    public bool? Dtr { get; set; }
+
+    /// <summary>Serial only: drive RTS to power an isolated cable; null leaves the line alone.</summary>
+    public bool? Rts { get; set; }
+}
+
+/// <summary>scpi (question and answer) or lines (the meter talks by itself).</summary>
+public sealed class ProtocolOptions
+{
+    /// <summary>scpi or lines.</summary>
+    public string Kind { get; set; } = "scpi";
+
+    /// <summary>Scpi: the question whose answer is a number. A semicolon chain such as INITiate;:FETCh? is allowed.</summary>
+    [DefaultValue("READ?")]
+    public string Query { get; set; } = "READ?";
+
+    /// <summary>Scpi: commands sent after each opening, in order, such as CONFigure:CURRent:AC 3.</summary>
+    public IList<string> SetUp { get; set; } = [];
+
+    /// <summary>Scpi: whether *IDN? is asked at opening.</summary>
+    public bool Identify { get; set; } = true;
+
+    /// <summary>Lines: a .NET regular expression with the named groups value and, optionally, unit, coupling, overload, flags.</summary>
+    public string Pattern { get; set; } = "";
+}
