@@ -1,1 +1,3 @@
-return 0;
+using Lampwarden.Host.Commands;
+
+return await CommandLine.RunAsync(args);

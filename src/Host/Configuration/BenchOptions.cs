@@ -1,0 +1,61 @@
+using System.ComponentModel.DataAnnotations;
+using Lampwarden.Acquisition;
+
+namespace Lampwarden.Host.Configuration;
+
+/// <summary>One bench: one limiter, the unit behind it, and the meters that watch it.</summary>
+public sealed class BenchOptions
+{
+    /// <summary>Unique name, shown everywhere.</summary>
+    [Required]
+    public string Name { get; set; } = "";
+
+    /// <summary>Mains text, such as 120 V 60 Hz.</summary>
+    [Required]
+    public string Mains { get; set; } = "";
+
+    /// <summary>Bank text, such as 75 W || 25 W, or inventory names.</summary>
+    [Required]
+    public string Bank { get; set; } = "";
+
+    /// <summary>Unit text, such as rectifier 45 W 470 uF.</summary>
+    [Required]
+    public string Unit { get; set; } = "";
+
+    /// <summary>The meters; at least one measures lineCurrent, at most one each quantity.</summary>
+    public IList<MeterOptions> Meters { get; set; } = [];
+
+    /// <summary>How long, and what is good enough.</summary>
+    public SoakOptions Soak { get; set; } = new();
+}
+
+/// <summary>One soak's plan.</summary>
+public sealed class SoakOptions
+{
+    /// <summary>Hours from switch-on to the verdict; 0.001 to 1000.</summary>
+    [Range(0.001, 1000.0)]
+    public double PlannedHours { get; set; } = 12;
+
+    /// <summary>Line current in amperes the user expects once settled; null to rely on the prediction alone.</summary>
+    [Range(0.0001, 100.0)]
+    public double? ExpectedAmps { get; set; }
+
+    /// <summary>Seconds to wait for current before the run begins without it; 0 to 86400.</summary>
+    [Range(0.0, 86400.0)]
+    public double SwitchOnWaitSeconds { get; set; } = 30;
+
+    /// <summary>What a passed soak must show.</summary>
+    public AcceptanceOptions Acceptance { get; set; } = new();
+}
+
+/// <summary>Limits a finished soak is judged by.</summary>
+public sealed class AcceptanceOptions
+{
+    /// <summary>Settled current within this many percent of the prediction; 0.1 to 100.</summary>
+    [Range(0.1, 100.0)]
+    public double SteadyWithinPercent { get; set; } = 15;
+
+    /// <summary>Share of the planned time that may lack readings, in percent; 0 to 100.</summary>
+    [Range(0.0, 100.0)]
+    public double GapsAtMostPercent { get; set; } = 5;
+}
