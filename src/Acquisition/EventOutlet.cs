@@ -1,0 +1,84 @@
+using System.Threading.Channels;
+using Lampwarden.Acquisition.Protocol;
+
+namespace Lampwarden.Acquisition;
+
+/// <summary>
+/// The one place where events are numbered, stamped, counted and handed on. Thread-safe.
+/// What the channel cannot take at once waits here, at most one read's worth of lines, until <see cref="FlushAsync"/>;
+/// nothing is dropped.
+/// </summary>
+internal sealed class EventOutlet
+{
+    private readonly Lock _gate = new();
+    private readonly Queue<MeterEvent> _waiting = new();
+    private readonly Channel<MeterEvent> _channel = Channel.CreateBounded<MeterEvent>(
+        new BoundedChannelOptions(1024) { SingleReader = true, FullMode = BoundedChannelFullMode.Wait });
+
+    private long _sequence;
+
+    public EventOutlet(SessionClock clock, HealthBook health)
+    {
+        Clock = clock;
+        Health = health;
+    }
+
+    public SessionClock Clock { get; }
+
+    public HealthBook Health { get; }
+
+    public ChannelReader<MeterEvent> Reader => _channel.Reader;
+
+    /// <summary>A reading or an overload out of a line that arrived.</summary>
+    public void Value(in MeterValue value, long firstByteStamp, double latencySeconds)
+    {
+        var utc = Clock.Utc(firstByteStamp);
+        lock (_gate)
+        {
+            Emit(new MeterEvent(value.Kind, _sequence++, value.Value, utc, Clock.ElapsedSeconds(firstByteStamp), latencySeconds, Digits: value.Digits));
+        }
+    }
+
+    /// <summary>A gap ending now.</summary>
+    public void Gap(GapReason reason, string detail)
+    {
+        var now = Clock.Now;
+        var utc = Clock.Utc(now);
+        lock (_gate)
+        {
+            Emit(new MeterEvent(MeterEventKind.Gap, _sequence++, double.NaN, utc, Clock.ElapsedSeconds(now), Reason: reason, Detail: detail));
+        }
+    }
+
+    /// <summary>Waits until everything given so far lies in the channel.</summary>
+    public async ValueTask FlushAsync(CancellationToken cancellationToken)
+    {
+        while (await _channel.Writer.WaitToWriteAsync(cancellationToken))
+        {
+            lock (_gate)
+            {
+                while (_waiting.TryPeek(out var one) && _channel.Writer.TryWrite(one))
+                {
+                    _waiting.Dequeue();
+                }
+
+                if (_waiting.Count == 0)
+                {
+                    return;
+                }
+            }
+        }
+    }
+
+    /// <summary>Nothing more will come: because of a fault of ours, or null at a normal end.</summary>
+    public void Complete(Exception? fault) => _channel.Writer.TryComplete(fault);
+
+    private void Emit(in MeterEvent one)
+    {
+        Health.Event(one);
+        if (_waiting.Count > 0 || !_channel.Writer.TryWrite(one))
+        {
+            _waiting.Enqueue(one);
+        }
+    }
+}

@@ -1,0 +1,136 @@
+using Lampwarden.Acquisition.Tests.Support;
+using Lampwarden.Simulator.Instruments;
+
+namespace Lampwarden.Acquisition.Tests;
+
+/// <summary>The whole stack: session, System.IO.Ports or sockets, kernel, simulated meter.</summary>
+public sealed class MeterSessionTests
+{
+    [Theory]
+    [InlineData(true)]
+    [InlineData(false)]
+    public async Task ReadAsync_HealthyMeter_GivesReadingsInOrderAndKnowsTheMeter(bool serial)
+    {
+        await using var bench = new TestBench(serial ? TestBench.NewTerminal() : new TcpInstrumentPort());
+
+        for (var sequence = 0; sequence < 20; sequence++)
+        {
+            var one = await bench.NextAsync();
+            Assert.Equal((MeterEventKind.Reading, sequence, 0.4125), (one.Kind, one.Sequence, one.Value));
+            Assert.True(one.LatencySeconds > 0);
+        }
+
+        var health = bench.Session.Health;
+        Assert.Equal("Gantry Mill,Wicket 4,000117,1.2", health.Identity);
+        Assert.True(health.Connected);
+        Assert.Empty(health.Problems);
+        Assert.Empty(health.LinesRefused);
+        Assert.Equal(health.LinesReceived, health.LinesUsed + health.LinesPassedOver);
+    }
+
+    [Fact]
+    public async Task ReadAsync_CurrentBeyondTheRange_GivesOverloads()
+    {
+        await using var bench = new TestBench(TestBench.NewTerminal());
+        await bench.NextAsync();
+
+        bench.World.Amps = 3.4;
+
+        var overload = await bench.UntilAsync(one => one.Kind != MeterEventKind.Reading);
+        Assert.Equal((MeterEventKind.Overload, double.NaN, GapReason.None), (overload.Kind, overload.Value, overload.Reason));
+    }
+
+    [Theory]
+    [InlineData(true)]
+    [InlineData(false)]
+    public async Task ReadAsync_MeterUnpluggedAndBack_GivesGapsWithReasonsThenReadings(bool serial)
+    {
+        await using var bench = new TestBench(serial ? TestBench.NewTerminal() : new TcpInstrumentPort());
+        await bench.NextAsync();
+
+        bench.Port.Unplug();
+        var gaps = new List<MeterEvent>();
+        await bench.UntilAsync(one => one.Reason == GapReason.PortMissing, gaps);
+        bench.Port.PlugIn();
+        bench.World.Amps = 0.5;
+        var back = await bench.UntilAsync(one => one.Kind == MeterEventKind.Reading && one.Value == 0.5, gaps);
+
+        Assert.Contains(gaps, one => one.Reason == GapReason.Disconnected);
+        Assert.All(gaps.Where(one => one.Kind == MeterEventKind.Gap), one => Assert.False(string.IsNullOrEmpty(one.Detail)));
+        Assert.Equal(Enumerable.Range(1, gaps.Count).Select(n => (long)n), gaps.Select(one => one.Sequence));
+        Assert.Equal(2, bench.Session.Health.Openings);
+        Assert.True(back.ElapsedSeconds > gaps[0].ElapsedSeconds);
+    }
+
+    [Fact]
+    public async Task ReadAsync_UnpluggedAgainAndAgain_AlwaysComesBackAndCloses()
+    {
+        await using var bench = new TestBench(TestBench.NewTerminal());
+        for (var round = 1; round <= 10; round++)
+        {
+            bench.World.Amps = round / 10.0;
+            await bench.UntilAsync(one => one.Kind == MeterEventKind.Reading && Math.Abs(one.Value - (round / 10.0)) < 1e-9);
+            bench.Port.Unplug();
+            bench.Port.PlugIn();
+        }
+
+        Assert.True(bench.Session.Health.Openings >= 10);
+    }
+
+    [Theory]
+    [InlineData("MEASure:CURRent:AC? 3")]
+    [InlineData("INITiate;:FETCh?")]
+    [InlineData("meas:curr:ac?")]
+    public async Task ReadAsync_OtherQuestions_AreAnsweredToo(string query)
+    {
+        await using var bench = new TestBench(TestBench.NewTerminal(), session: options => options.Protocol.Query = query);
+
+        Assert.Equal(0.4125, (await bench.NextAsync()).Value);
+    }
+
+    [Fact]
+    public async Task ReadAsync_MissingPort_SaysSoAndHowToGoOn()
+    {
+        var options = new MeterOptions { Name = "line" };
+        options.Transport.Port = "/dev/serial/by-id/usb-not-there";
+        await using var session = new MeterSession(options, TimeProvider.System);
+
+        await foreach (var one in session.ReadAsync(TestContext.Current.CancellationToken))
+        {
+            Assert.Equal(GapReason.PortMissing, one.Reason);
+            Assert.Contains("There is no port /dev/serial/by-id/usb-not-there", one.Detail, StringComparison.Ordinal);
+            break;
+        }
+    }
+
+    [Fact]
+    public async Task ReadAsync_Cancelled_EndsWithTheTokensException()
+    {
+        await using var port = TestBench.NewTerminal();
+        await using var meter = new SimulatedMeter(new SimulatedMeterOptions(), new SteadyWorld(), port, TimeProvider.System);
+        await using var session = new MeterSession(TestBench.OptionsFor(port), TimeProvider.System);
+        using var stop = new CancellationTokenSource();
+
+        await Assert.ThrowsAnyAsync<OperationCanceledException>(async () =>
+        {
+            await foreach (var one in session.ReadAsync(stop.Token))
+            {
+                await stop.CancelAsync();
+            }
+        });
+    }
+
+    [Fact]
+    public async Task ReadAsync_Twice_IsRefused()
+    {
+        await using var bench = new TestBench(TestBench.NewTerminal());
+        await bench.NextAsync();
+
+        await Assert.ThrowsAsync<InvalidOperationException>(async () =>
+        {
+            await foreach (var one in bench.Session.ReadAsync(TestContext.Current.CancellationToken))
+            {
+            }
+        });
+    }
+}
