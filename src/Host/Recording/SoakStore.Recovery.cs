@@ -1,0 +1,45 @@
+using Lampwarden.Analysis.Watching;
+using Lampwarden.Host.Recording.Packing;
+using Lampwarden.Host.Recording.Writing;
+
+namespace Lampwarden.Host.Recording;
+
+public sealed partial class SoakStore
+{
+    /// <summary>The reason given to a run that a kill or a power cut ended.</summary>
+    public const string InterruptedReason =
+        "The recording was interrupted before the run's end (the program was killed or the power failed): what is stored reaches up to the last second before that.";
+
+    // Only the holder of the folder's lock comes here, so a run without an end is nobody's.
+    private void CloseInterrupted()
+    {
+        var open = Runs().Where(run => run.EndedUtc is null).ToList();
+        foreach (var info in open)
+        {
+            var run = Reload(info.Run);
+            DoAsync(
+                batch =>
+                {
+                    run.End = new RunEnd(Verdict.Incomplete, [InterruptedReason]);
+                    batch.Touched.Add(run);
+                },
+                CancellationToken.None).GetAwaiter().GetResult();
+        }
+
+        Interrupted = [.. open.Select(info => Run(info.Run).Info)];
+    }
+
+    /// <summary>A run as its writer left it: what lies in short chunks is packed when it is closed.</summary>
+    private ActiveRun Reload(string id)
+    {
+        var run = new ActiveRun { Key = KeyOf(id), Id = id };
+        using var reader = new StoreReader(FilePath);
+        run.Entries = reader.Count(run.Key, "SELECT coalesce(sum(count),0) FROM chunks WHERE run=$run");
+        foreach (var chunk in reader.ShortChunks(run.Key))
+        {
+            run.Tail.AddRange(ReadingChunk.Unpack(chunk.Data));
+        }
+
+        return run;
+    }
+}
