@@ -25,18 +25,21 @@ public sealed class RunRecorder
     public bool Append(in LineReading reading) =>
         _writer.Queue.TryAdd(new WriteItem(_run, reading, null)) || Lose(reading.Seconds);
 
-    /// <summary>Appends a missed poll. Misses of one reason in a row become one gap; the stream keeps each.</summary>
+    /// <summary>
+    /// Appends a missed poll. The stream keeps each, so that a replay sees what the watch saw; misses of one reason with no
+    /// reading between them are one gap, from the last reading before to the first after.
+    /// </summary>
     /// <param name="reason">Kebab-case, such as no-answer.</param>
-    /// <param name="detail">What was seen; of the first miss of a gap.</param>
-    public bool AppendGap(double fromSeconds, double toSeconds, string reason, string? detail = null) =>
-        Add(toSeconds, batch => batch.AddGap(_run, fromSeconds, toSeconds, reason, detail), important: false);
+    /// <param name="detail">What was seen; that of a gap's first miss is kept.</param>
+    public bool AppendMissed(double seconds, string reason, string? detail = null) =>
+        Add(seconds, batch => batch.AddMissed(_run, seconds, reason, detail), important: false);
 
     /// <summary>Appends a step in the life of a finding.</summary>
     public bool AppendFinding(double seconds, FindingChange change) =>
         Add(seconds, batch => RunRows.Write(batch, _run.Key, seconds, change));
 
     /// <summary>Appends a step in the life of an alert. Await <see cref="FlushAsync"/> before anybody is told of it.</summary>
-    public bool AppendAlert(AlertChange change) => Add(change.Seconds, batch => RunRows.Write(batch, _run.Key, change));
+    public bool AppendAlert(StoredAlertChange change) => Add(change.Seconds, batch => RunRows.Write(batch, _run.Key, change));
 
     /// <summary>Keeps the watch's state, in place of the one before, so that an interrupted run can be taken up again.</summary>
     public bool KeepWatchState(double seconds, ReadOnlyMemory<byte> state)

@@ -36,7 +36,7 @@ public sealed record RunRecord(
     string? SummaryJson,
     IReadOnlyList<StoredGap> Gaps,
     IReadOnlyList<StoredFindingChange> FindingChanges,
-    IReadOnlyList<AlertChange> AlertChanges,
+    IReadOnlyList<StoredAlertChange> AlertChanges,
     IReadOnlyList<Note> Notes,
     IReadOnlyList<AttachmentInfo> Attachments)
 {
@@ -63,7 +63,7 @@ public sealed record StoredFindingChange(double Seconds, FindingChange Change);
 /// <param name="By">Who or what did it; null for the watch itself.</param>
 /// <param name="Text">For people.</param>
 /// <param name="Json">Anything else, as a JSON document.</param>
-public sealed record AlertChange(
+public sealed record StoredAlertChange(
     double Seconds,
     DateTimeOffset Utc,
     string Alert,

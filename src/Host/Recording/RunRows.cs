@@ -24,7 +24,7 @@ internal static class RunRows
             JsonSerializer.Serialize(evidence));
     }
 
-    public static void Write(StoreBatch batch, long run, AlertChange change) => batch.Run(
+    public static void Write(StoreBatch batch, long run, StoredAlertChange change) => batch.Run(
         "INSERT INTO alert_changes (run, at_ms, utc_ms, alert, transition, state, done_by, text, more) VALUES (?,?,?,?,?,?,?,?,?)",
         run, StoreBatch.Milliseconds(change.Seconds), change.Utc.ToUnixTimeMilliseconds(), change.Alert, change.Transition, change.State,
         change.By, change.Text, change.Json);
@@ -49,7 +49,7 @@ internal static class RunRows
 
     public const string AlertColumns = "at_ms, utc_ms, alert, transition, state, done_by, text, more";
 
-    public static AlertChange ReadAlert(SqliteDataReader row) => new(
+    public static StoredAlertChange ReadAlert(SqliteDataReader row) => new(
         row.GetInt64(0) / 1000.0, Utc(row.GetInt64(1)), row.GetString(2), row.GetString(3), row.GetString(4), Text(row, 5), Text(row, 6), Text(row, 7));
 
     public static DateTimeOffset Utc(long milliseconds) => DateTimeOffset.FromUnixTimeMilliseconds(milliseconds);

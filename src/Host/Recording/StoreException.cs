@@ -3,7 +3,7 @@ using Microsoft.Data.Sqlite;
 namespace Lampwarden.Host.Recording;
 
 /// <summary>The store cannot do what was asked. The message says what, where, and what to do; the command line exits with 3.</summary>
-public sealed class StoreException : Exception
+public sealed class StoreException : IOException
 {
     public StoreException()
     {

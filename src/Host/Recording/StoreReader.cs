@@ -8,9 +8,20 @@ internal sealed class StoreReader : IDisposable
 {
     private readonly SqliteConnection _connection;
 
-    public StoreReader(string path) => _connection = SoakStore.Connect(path, SqliteOpenMode.ReadOnly);
+    private readonly SqliteTransaction _view;
 
-    public void Dispose() => _connection.Dispose();
+    public StoreReader(string path)
+    {
+        _connection = SoakStore.Connect(path, SqliteOpenMode.ReadOnly);
+        // One view for all statements of a question: the writer may be packing short chunks into a full one meanwhile.
+        _view = _connection.BeginTransaction(deferred: true);
+    }
+
+    public void Dispose()
+    {
+        _view.Dispose();
+        _connection.Dispose();
+    }
 
     public long Count(long run, string sql)
     {

@@ -10,6 +10,8 @@ internal static class NumberColumn
 {
     private const int Overload = 16;
     private const int Missing = 17;
+
+    // A double as it is: 18 where no decimal places hold it, 19 + d where it has d but is too large to be scaled with its neighbours.
     private const int Raw = 18;
     private const double LargestScaled = 1L << 53;
 
@@ -28,7 +30,7 @@ internal static class NumberColumn
         {
             kinds[i] = Kind(values[i], decimals[i], most);
             scaled[i] = kinds[i] < Overload ? Scale(values[i], decimals[i], most) : i == 0 ? 0 : scaled[i - 1];
-            if (kinds[i] == Raw)
+            if (kinds[i] >= Raw)
             {
                 raw.Add(values[i]);
             }
@@ -53,12 +55,12 @@ internal static class NumberColumn
         for (var i = 0; i < values.Length; i++)
         {
             var kind = (int)kinds[i];
-            decimals[i] = kind < Overload ? kind : kind == Raw ? -1 : 0;
+            decimals[i] = kind < Overload ? kind : kind >= Raw ? kind - Raw - 1 : 0;
             values[i] = kind switch
             {
                 Overload => double.PositiveInfinity,
                 Missing => double.NaN,
-                Raw => BitConverter.UInt64BitsToDouble(reader.Read(64)),
+                >= Raw => BitConverter.UInt64BitsToDouble(reader.Read(64)),
                 >= 0 and < Overload when kind == most => LineReading.Rebuild(scaled[i], kind),
                 >= 0 and < Overload when kind < most => LineReading.Rebuild(scaled[i] / (long)LineReading.PowerOfTen(most - kind), kind),
                 _ => throw new InvalidDataException($"kind {kind} of a packed reading is unknown"),
@@ -71,7 +73,7 @@ internal static class NumberColumn
         double.PositiveInfinity => Overload,
         double.NaN => Missing,
         _ when decimals < 0 || !double.IsFinite(value) => Raw,
-        _ when Math.Abs(value) * LineReading.PowerOfTen(most) >= LargestScaled => Raw,
+        _ when Math.Abs(value) * LineReading.PowerOfTen(most) >= LargestScaled => Raw + 1 + decimals,
         _ => decimals,
     };
 

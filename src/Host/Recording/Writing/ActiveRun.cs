@@ -20,6 +20,9 @@ internal sealed class ActiveRun
     /// <summary>Entries of the commit at hand.</summary>
     public List<LineReading> Fresh { get; } = [];
 
+    /// <summary>Time of the last stored entry; 0 before the first.</summary>
+    public long LastMs { get; set; }
+
     /// <summary>The row of the gap that the next missed poll may lengthen; null after a reading.</summary>
     public OpenGap? Gap { get; set; }
 
@@ -58,6 +61,6 @@ internal sealed class ActiveRun
     }
 }
 
-internal sealed record OpenGap(long Row, string Reason);
+internal sealed record OpenGap(long Row, string Reason, long ToMs);
 
 internal readonly record struct Loss(long Count, double FromSeconds, double ToSeconds);

@@ -25,22 +25,31 @@ internal sealed class StoreBatch(SqliteConnection connection, int chunkReadings)
     public void Add(ActiveRun run, in LineReading reading)
     {
         run.Fresh.Add(reading);
-        run.FreshGap = reading.IsMissing ? run.FreshGap : null;
         Touched.Add(run);
+        if (run.FreshGap is { } ended)
+        {
+            Run("UPDATE gaps SET to_ms=? WHERE gap=?", reading.Milliseconds, ended.Row);
+            run.FreshGap = null;
+        }
     }
 
-    public void AddGap(ActiveRun run, double fromSeconds, double toSeconds, string reason, string? detail)
+    public void AddMissed(ActiveRun run, double seconds, string reason, string? detail)
     {
-        Add(run, new LineReading(toSeconds, double.NaN));
-        var (from, to) = (Milliseconds(fromSeconds), Milliseconds(toSeconds));
+        var missed = new LineReading(seconds, double.NaN);
+        var from = run.FreshGap?.ToMs ?? (run.Fresh.Count > 0 ? run.Fresh[^1].Milliseconds : run.LastMs);
+        run.Fresh.Add(missed);
+        Touched.Add(run);
         if (run.FreshGap is { } open && open.Reason == reason)
         {
-            Run("UPDATE gaps SET to_ms=?, polls=polls+1 WHERE gap=?", to, open.Row);
+            Run("UPDATE gaps SET to_ms=?, polls=polls+1 WHERE gap=?", missed.Milliseconds, open.Row);
+            run.FreshGap = open with { ToMs = missed.Milliseconds };
             return;
         }
 
-        Run("INSERT INTO gaps (run, from_ms, to_ms, reason, detail, polls) VALUES (?,?,?,?,?,1)", run.Key, from, to, reason, detail);
-        run.FreshGap = new OpenGap((long)Ask("SELECT last_insert_rowid()")!, reason);
+        Run(
+            "INSERT INTO gaps (run, from_ms, to_ms, reason, detail, polls) VALUES (?,?,?,?,?,1)",
+            run.Key, from, missed.Milliseconds, reason, detail);
+        run.FreshGap = new OpenGap((long)Ask("SELECT last_insert_rowid()")!, reason, missed.Milliseconds);
     }
 
     /// <summary>Writes the fresh entries of a run: as a short chunk, or with all that wait in short ones as full chunks.</summary>

@@ -177,6 +177,7 @@ internal sealed class StoreWriter : IDisposable
             run.LossStored(loss);
             run.Entries += run.Fresh.Count;
             run.Tail.AddRange(run.Fresh);
+            run.LastMs = run.Fresh.Count > 0 ? run.Fresh[^1].Milliseconds : run.LastMs;
             if (run.Tail.Count >= _options.ChunkReadings)
             {
                 run.Tail.RemoveRange(0, run.Tail.Count / _options.ChunkReadings * _options.ChunkReadings);
