@@ -26,12 +26,27 @@ internal static partial class Log
     [LoggerMessage(EventId = 202, EventName = "MeterRecovered", Level = LogLevel.Information, Message = "{Bench}: meter {Meter} reads again after {Seconds:F1} s")]
     public static partial void MeterRecovered(ILogger logger, string bench, string meter, double seconds);
 
-    [LoggerMessage(EventId = 300, EventName = "AlertTold", Message = "{Bench}: alert {What}: {Signature} ({Severity}): {Text}")]
-    public static partial void AlertTold(ILogger logger, LogLevel level, string bench, string what, string signature, string severity, string text);
+    [LoggerMessage(EventId = 300, EventName = "AlertTold", Message = "{Bench}: alert {What}: {Cause} ({Severity}): {Text}")]
+    public static partial void AlertTold(ILogger logger, LogLevel level, string bench, string what, string cause, string severity, string text);
 
-    [LoggerMessage(EventId = 301, EventName = "AlertNotStored", Level = LogLevel.Error, Message = "{Bench}: alert {FindingNumber} is told before it could be stored")]
-    public static partial void AlertNotStored(ILogger logger, Exception error, string bench, int findingNumber);
+    [LoggerMessage(EventId = 301, EventName = "AlertNotStored", Level = LogLevel.Error, Message = "{Bench}: alert {Alert} is told before it could be stored")]
+    public static partial void AlertNotStored(ILogger logger, Exception error, string bench, int alert);
 
-    [LoggerMessage(EventId = 302, EventName = "RouteFailed", Level = LogLevel.Error, Message = "Route {Route} could not tell alert {FindingNumber} of {Bench}")]
-    public static partial void RouteFailed(ILogger logger, Exception error, string route, string bench, int findingNumber);
+    [LoggerMessage(EventId = 302, EventName = "RouteFailed", Level = LogLevel.Error, Message = "Route {Route} could not tell alert {Alert} of {Bench}")]
+    public static partial void RouteFailed(ILogger logger, Exception error, string route, string bench, int alert);
+
+    [LoggerMessage(EventId = 303, EventName = "AlertDropped", Level = LogLevel.Error, Message = "{Bench}: change '{What}' of alert {Alert} was dropped by {Queue}, whose queue is full")]
+    public static partial void AlertDropped(ILogger logger, string queue, string bench, int alert, string what);
+
+    [LoggerMessage(EventId = 304, EventName = "RouteFailing", Level = LogLevel.Warning, Message = "Route {Route} failed ({Failures} in a row), tries again in {Seconds:F0} s: {Why}")]
+    public static partial void RouteFailing(ILogger logger, string route, int failures, double seconds, string why);
+
+    [LoggerMessage(EventId = 305, EventName = "RouteDown", Level = LogLevel.Error, Message = "Route {Route} is down, {Untold} changes untold: {Why}")]
+    public static partial void RouteDown(ILogger logger, string route, int untold, string why);
+
+    [LoggerMessage(EventId = 306, EventName = "RouteWorksAgain", Level = LogLevel.Information, Message = "Route {Route} works again")]
+    public static partial void RouteWorksAgain(ILogger logger, string route);
+
+    [LoggerMessage(EventId = 307, EventName = "AlertFlood", Level = LogLevel.Warning, Message = "Route {Route}: {Count} alerts within ten minutes; they are told in groups until it calms down")]
+    public static partial void AlertFlood(ILogger logger, string route, int count);
 }

@@ -7,19 +7,21 @@ namespace Lampwarden.Host.Alerting;
 /// A store that cannot keep up delays the telling by at most <see cref="StoreDeadline"/>: a warning that is not on
 /// record is worth more than a record of a warning that nobody got.
 /// </summary>
-public sealed class AlertTeller(IReadOnlyList<IAlertRoute> routes, Func<CancellationToken, Task> storedAsync, ILogger logger) : IAsyncDisposable
+public sealed class AlertTeller(IReadOnlyList<IAlertRoute> routes, Func<CancellationToken, Task> storedAsync, ILogger logger, TimeProvider? time = null) : IAsyncDisposable
 {
     /// <summary>The longest wait for the store before an alert is told anyway, in real time.</summary>
     public static readonly TimeSpan StoreDeadline = TimeSpan.FromSeconds(3);
 
-    private readonly Channel<AlertChange> _changes = Channel.CreateBounded<AlertChange>(new BoundedChannelOptions(1000) { SingleReader = true, FullMode = BoundedChannelFullMode.DropOldest });
+    private readonly Channel<AlertChange> _changes = Channel.CreateBounded<AlertChange>(
+        new BoundedChannelOptions(1000) { SingleReader = true, FullMode = BoundedChannelFullMode.DropOldest },
+        dropped => Log.AlertDropped(logger, "teller", dropped.Alert.Bench, dropped.Alert.Number, dropped.What));
     private Task? _loop;
 
     /// <summary>Hands one change over; never waits.</summary>
     public void Tell(AlertChange change)
     {
         _loop ??= Task.Run(RunAsync);
-        _changes.Writer.TryWrite(change);
+        _changes.Writer.TryWrite(change.Utc == default ? change with { Utc = (time ?? TimeProvider.System).GetUtcNow() } : change);
     }
 
     /// <summary>Tells what is left, then stops.</summary>
@@ -43,7 +45,7 @@ public sealed class AlertTeller(IReadOnlyList<IAlertRoute> routes, Func<Cancella
             }
             catch (Exception error) when (error is not OutOfMemoryException)
             {
-                Log.AlertNotStored(logger, error, change.Alert.Bench, change.Alert.FindingNumber);
+                Log.AlertNotStored(logger, error, change.Alert.Bench, change.Alert.Number);
             }
 
             foreach (var route in routes)
@@ -54,7 +56,7 @@ public sealed class AlertTeller(IReadOnlyList<IAlertRoute> routes, Func<Cancella
                 }
                 catch (Exception error) when (error is not OutOfMemoryException)
                 {
-                    Log.RouteFailed(logger, error, route.Name, change.Alert.Bench, change.Alert.FindingNumber);
+                    Log.RouteFailed(logger, error, route.Name, change.Alert.Bench, change.Alert.Number);
                 }
             }
         }

@@ -12,8 +12,9 @@ public sealed class LogRoute(ILogger logger) : IAlertRoute
     public Task TellAsync(AlertChange change, CancellationToken cancellation)
     {
         var alert = change.Alert;
-        var level = alert.Severity == Severity.Critical && change.What is "raised" or "amended" ? LogLevel.Error : LogLevel.Warning;
-        Log.AlertTold(logger, level, alert.Bench, change.What, alert.Signature.Text(), alert.Severity.Text(), alert.Text);
+        var news = change.What is AlertSteps.Raised or AlertSteps.Amended or AlertSteps.Repeated;
+        var level = !news ? LogLevel.Information : alert.Severity == Severity.Critical ? LogLevel.Error : LogLevel.Warning;
+        Log.AlertTold(logger, level, alert.Bench, change.What, alert.Cause, alert.Severity.Text(), alert.Text);
         return Task.CompletedTask;
     }
 }
