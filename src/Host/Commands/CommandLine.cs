@@ -49,5 +49,9 @@ public static class CommandLine
     private static RootCommand Build() => new($"Lampwarden watches a repaired mains unit soak behind a series bank of lamps.\n{Cautions}")
     {
         // One line a command, in the order a technician meets them.
+        new RehearseCommand(),
+        new PredictCommand(),
+        new WatchCommand(),
+        new ReplayCommand(),
     };
 }

@@ -38,6 +38,7 @@ public static class ConfigurationFile
         var faults = new List<Fault>();
         var options = new LampwardenOptions();
         new StrictBinder(faults).Bind(root, options, "");
+        OptionsRules.Check(options, faults);
         return faults.Count == 0 ? options : throw new ConfigurationException(path, faults);
     }
 }

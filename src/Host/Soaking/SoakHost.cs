@@ -1,0 +1,80 @@
+using Lampwarden.Host.Alerting;
+using Lampwarden.Host.Recording;
+using Serilog;
+using Serilog.Events;
+
+namespace Lampwarden.Host.Soaking;
+
+/// <summary>The service as a whole: one hosted soak a bench over one store, until all are done or somebody stops it.</summary>
+public static class SoakHost
+{
+    /// <summary>Runs the benches.</summary>
+    /// <param name="plans">At least one.</param>
+    /// <param name="recordFolder">Where the store and the log lie; made if missing.</param>
+    /// <param name="time">The clock of polls and time stamps.</param>
+    /// <param name="listeners">Who looks on.</param>
+    /// <param name="logToConsole">Whether the log also goes to standard error.</param>
+    /// <param name="stop">Ends every soak; the runs are still closed and stored.</param>
+    /// <returns>What came of each run that began.</returns>
+    /// <exception cref="StoreException">The store cannot be opened or written.</exception>
+    public static async Task<IReadOnlyList<SoakDocument>> RunAsync(
+        IReadOnlyList<BenchPlan> plans,
+        string recordFolder,
+        TimeProvider time,
+        IReadOnlyList<ISoakListener> listeners,
+        bool logToConsole,
+        CancellationToken stop)
+    {
+        using var store = SoakStore.Open(recordFolder, time);
+        var builder = Microsoft.Extensions.Hosting.Host.CreateEmptyApplicationBuilder(new HostApplicationBuilderSettings { ContentRootPath = AppContext.BaseDirectory });
+        builder.Services.AddSerilog(MakeLog(recordFolder, logToConsole), dispose: true);
+        builder.Services.Configure<HostOptions>(options => options.ShutdownTimeout = TimeSpan.FromSeconds(15));
+        builder.Services.AddSingleton<IHostLifetime, CommandLifetime>();
+        builder.Services.AddSingleton(services => new SoakResults(plans.Count, services.GetRequiredService<IHostApplicationLifetime>().StopApplication));
+        builder.Services.AddSingleton(services =>
+        {
+            var logger = services.GetRequiredService<ILoggerFactory>().CreateLogger("Lampwarden");
+            return new SoakSurroundings(time, logger, [new LogRoute(logger)], listeners);
+        });
+        foreach (var plan in plans)
+        {
+            builder.Services.AddSingleton<IHostedService>(services => new BenchSoakService(
+                plan, store, services.GetRequiredService<SoakSurroundings>(), services.GetRequiredService<SoakResults>()));
+        }
+
+        using var host = builder.Build();
+        await host.StartAsync(CancellationToken.None);
+        var results = host.Services.GetRequiredService<SoakResults>();
+        await host.WaitForShutdownAsync(stop);
+        return results.Fault is { } fault ? throw new IOException($"A soak ended by a fault: {fault.Message}", fault) : results.Documents;
+    }
+
+    private static Serilog.Core.Logger MakeLog(string recordFolder, bool logToConsole)
+    {
+        var log = new LoggerConfiguration()
+            .MinimumLevel.Information()
+            .MinimumLevel.Override("Microsoft", LogEventLevel.Warning)
+            .WriteTo.File(
+                new Serilog.Formatting.Compact.CompactJsonFormatter(),
+                Path.Combine(recordFolder, "log", "lampwarden-.jsonl"),
+                rollingInterval: RollingInterval.Day,
+                retainedFileCountLimit: 31);
+        if (logToConsole)
+        {
+            log.WriteTo.Console(
+                standardErrorFromLevel: LogEventLevel.Verbose,
+                formatProvider: System.Globalization.CultureInfo.InvariantCulture,
+                outputTemplate: "{Timestamp:HH:mm:ss} {Level:u3} {Message:lj}{NewLine}{Exception}");
+        }
+
+        return log.CreateLogger();
+    }
+
+    /// <summary>Signals are the command line's business: it cancels the token that this host waits on.</summary>
+    private sealed class CommandLifetime : IHostLifetime
+    {
+        public Task WaitForStartAsync(CancellationToken cancellationToken) => Task.CompletedTask;
+
+        public Task StopAsync(CancellationToken cancellationToken) => Task.CompletedTask;
+    }
+}
