@@ -44,7 +44,7 @@ public sealed class Bank
         new BankParser(text, mains, inventory ?? LampInventory.Empty).Parse();
 
     /// <summary>The same circuit with other lamps in the same places.</summary>
-    internal Bank With(IReadOnlyList<Lamp> lamps)
+    public Bank With(IReadOnlyList<Lamp> lamps)
     {
         var next = 0;
         return new Bank(Text, Replace(Root), Notes);

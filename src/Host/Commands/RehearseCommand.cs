@@ -43,7 +43,7 @@ internal sealed class RehearseCommand : CliCommand
 
         var prose = terminal.Prose;
         prose.WriteLine($"Rehearsal '{scenario.Name}': {scenario.About}");
-        var time = new ScaledTimeProvider(speed);
+        using var time = new RehearsalClock(speed, pulseEverySeconds: 1.5 / scenario.Meter.ReadingsPerSecond);
         await using var rig = new SimulatedRig(scenario, time);
         foreach (var meter in rig.Meters)
         {
@@ -66,7 +66,7 @@ internal sealed class RehearseCommand : CliCommand
 
         var narrator = new RehearsalNarrator(prose, plan);
         var documents = await SoakHost.RunAsync(
-            [plan], parsed.GetValue(_record) ?? new RecordingOptions().Folder, time, [narrator], logToConsole: false, cancellation);
+            [plan], parsed.GetValue(_record) ?? new RecordingOptions().Folder, time, [narrator], logToConsole: false, started: time.Begin, cancellation);
         cancellation.ThrowIfCancellationRequested();
         var document = documents.Count == 1 ? documents[0] : null;
         var missing = document is null ? ["a run: no current flowed"] : Missing(scenario, document, narrator, plan);

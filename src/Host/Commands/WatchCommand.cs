@@ -37,7 +37,7 @@ internal sealed class WatchCommand : CliCommand
         using var ending = CancellationTokenSource.CreateLinkedTokenSource(cancellation);
         ending.CancelAfter(duration);
         var documents = await SoakHost.RunAsync(
-            plans, parsed.GetValue(_record) ?? options.Recording.Folder, TimeProvider.System, [], logToConsole: true, ending.Token);
+            plans, parsed.GetValue(_record) ?? options.Recording.Folder, TimeProvider.System, [], logToConsole: true, started: null, ending.Token);
         Finish(terminal, documents);
         return cancellation.IsCancellationRequested ? ExitCode.Interrupted : Answer(documents, plans.Count);
     }

@@ -43,7 +43,7 @@ public sealed class RehearsalNarrator(TextWriter prose, BenchPlan plan) : ISoakL
                     $"  The alert is stored and told at {Narration.Amps(_lastAmps)}, {_lastAmps / plan.Prediction.Shorted.LineAmps:P0} of what a full short would draw."));
                 break;
             case RunEnded ended:
-                Say($"{Narration.Time(ended.Document.Summary.TryGetValue("lengthSeconds", out var length) ? (double)length : _nextQuiet)}: the run is closed. Verdict: {ended.Judgement.Verdict.Text().ToUpperInvariant()}.");
+                Say($"{Narration.Time(ended.Seconds)}: the run is closed. Verdict: {ended.Judgement.Verdict.Text().ToUpperInvariant()}.");
                 foreach (var reason in ended.Judgement.Reasons)
                 {
                     Say("  " + reason);
@@ -64,7 +64,7 @@ public sealed class RehearsalNarrator(TextWriter prose, BenchPlan plan) : ISoakL
         _lastAmps = amps;
         _looks++;
         var predicted = plan.Prediction;
-        if (_looks <= 3)
+        if (_looks <= 2)
         {
             Say(string.Create(CultureInfo.InvariantCulture,
                 $"{Narration.Time(seconds)}: switch-on, the meter shows {Narration.Amps(amps)}{(_looks == 1 ? $" (predicted for the first reading: up to {Narration.Amps(predicted.Inrush.FirstReadingAmps)}; the peak itself, {Narration.Amps(predicted.Inrush.PeakAmps)}, no meter can show)" : "")}."));

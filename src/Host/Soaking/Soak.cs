@@ -71,8 +71,8 @@ public sealed class Soak
     }
 
     /// <summary>Somebody has seen an alert. Safe from any thread; carried out by the soak's loop.</summary>
-    public void Acknowledge(int findingNumber) => _inputs.Writer.TryWrite(new SoakInput(null, default, soak =>
-        soak.Publish(soak._alerts.Acknowledge(findingNumber, soak._ledger.LastSeconds))));
+    public void Acknowledge(int alertNumber, string? by = null) => _inputs.Writer.TryWrite(new SoakInput(null, default, soak =>
+        soak.Publish(soak._alerts.Acknowledge(alertNumber, soak._ledger.LastSeconds, by))));
 
     /// <summary>Somebody changed something on the bench. Safe from any thread; carried out by the soak's loop.</summary>
     public void Announce(Announcement what) => _inputs.Writer.TryWrite(new SoakInput(null, default, soak =>
@@ -147,6 +147,10 @@ public sealed class Soak
         var changes = _ledger.Take(observation, look.Reason);
         Tell(new Observed(_plan.Name, observation, _ledger.Watch.Phase));
         Publish(changes);
+        foreach (var change in _alerts.Tick(observation.Seconds))
+        {
+            Publish(change);
+        }
     }
 
     private void Publish(IReadOnlyList<FindingChange> changes)
@@ -168,7 +172,8 @@ public sealed class Soak
 
         var alert = change.Alert;
         _recorder.AppendAlert(new StoredAlertChange(
-            change.Seconds, _around.Time.GetUtcNow(), FormattableString.Invariant($"{alert.FindingNumber}"), change.What, alert.State.ToString(), Text: alert.Text));
+            change.Seconds, _around.Time.GetUtcNow(), FormattableString.Invariant($"{alert.Number}"), change.What, alert.State.ToString(), change.By, alert.Text,
+            JsonSerializer.Serialize(change, Json.Compact)));
         Tell(new AlertChanged(_plan.Name, change));
         _tell!(change);
     }
@@ -186,7 +191,7 @@ public sealed class Soak
 
         Log.SoakEnded(_around.Logger, _plan.Name, _recorder.Run, judgement.Verdict.Text(), _ledger.LastSeconds, _ledger.Readings);
         document = document with { Run = _recorder.Run, Record = _store.FilePath };
-        Tell(new RunEnded(_plan.Name, document, judgement));
+        Tell(new RunEnded(_plan.Name, _ledger.LastSeconds, document, judgement));
         return document;
     }
 

@@ -32,7 +32,7 @@ public sealed record FindingChanged(string Bench, double Seconds, FindingChange 
 public sealed record AlertChanged(string Bench, AlertChange Change) : SoakEvent(Bench);
 
 /// <summary>The run is closed and stored.</summary>
-public sealed record RunEnded(string Bench, SoakDocument Document, Judgement Judgement) : SoakEvent(Bench);
+public sealed record RunEnded(string Bench, double Seconds, SoakDocument Document, Judgement Judgement) : SoakEvent(Bench);
 
 /// <summary>Hears what happens on the benches. Called on the soak's own loop, so it must be quick and must not throw.</summary>
 public interface ISoakListener

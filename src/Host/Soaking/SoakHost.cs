@@ -14,6 +14,7 @@ public static class SoakHost
     /// <param name="time">The clock of polls and time stamps.</param>
     /// <param name="listeners">Who looks on.</param>
     /// <param name="logToConsole">Whether the log also goes to standard error.</param>
+    /// <param name="started">Called once every soak is on its way; null for nothing.</param>
     /// <param name="stop">Ends every soak; the runs are still closed and stored.</param>
     /// <returns>What came of each run that began.</returns>
     /// <exception cref="StoreException">The store cannot be opened or written.</exception>
@@ -23,6 +24,7 @@ public static class SoakHost
         TimeProvider time,
         IReadOnlyList<ISoakListener> listeners,
         bool logToConsole,
+        Action? started,
         CancellationToken stop)
     {
         using var store = SoakStore.Open(recordFolder, time);
@@ -44,6 +46,7 @@ public static class SoakHost
 
         using var host = builder.Build();
         await host.StartAsync(CancellationToken.None);
+        started?.Invoke();
         var results = host.Services.GetRequiredService<SoakResults>();
         await host.WaitForShutdownAsync(stop);
         return results.Fault is { } fault ? throw new IOException($"A soak ended by a fault: {fault.Message}", fault) : results.Documents;

@@ -31,7 +31,7 @@ public sealed class SimulatedRig : IAsyncDisposable
         {
             var port = makePort();
             _ports.Add(port);
-            _meters.Add(new SimulatedMeter(Traits(scenario, quantity), Bench, port, time, start));
+            _meters.Add(new SimulatedMeter(Traits(scenario, quantity), new Asked(Bench, time as RehearsalClock), port, time, start));
             reached.Add(new RigMeter(quantity == MeasuredQuantity.LineCurrent ? "line" : "mains", quantity, port is TcpInstrumentPort ? "tcp" : "serial", port.Place));
         }
 
@@ -73,6 +73,20 @@ public sealed class SimulatedRig : IAsyncDisposable
         NoiseCounts = 0.3,
         Seed = scenario.Seed,
     };
+
+    /// <summary>The bench, telling the clock whenever its line current is asked for.</summary>
+    private sealed class Asked(SimulatedBench bench, RehearsalClock? clock) : ISimulatedQuantity
+    {
+        public double Rms(MeasuredQuantity quantity, double simulatedSeconds, double windowSeconds)
+        {
+            if (quantity == MeasuredQuantity.LineCurrent)
+            {
+                clock?.Pulse();
+            }
+
+            return bench.Rms(quantity, simulatedSeconds, windowSeconds);
+        }
+    }
 
     private async Task PlayCablesAsync(Scenario scenario, TimeProvider time, long start)
     {
