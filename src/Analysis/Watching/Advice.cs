@@ -23,8 +23,21 @@ internal static class Advice
     public static string Open(double amps) => Invariant(
         $"The current fell to {Amps(amps)}: the circuit has opened; look at the unit's fuse, the lamps and the leads, and do not trust the unit to be dead.");
 
+    public const string DipUnmeasured =
+        "The current left its level and came back within a minute and a half, as a dip of the mains would make it: nothing to do, but measure the mains to be sure.";
+
+    public static string Mains(double percent) => Invariant(
+        $"The mains moved by {percent:+0.#;-0.#} %: no fault of the unit, but if it comes again and again look at what else hangs on this line.");
+
+    public static string Cycling(double periodSeconds) => double.IsNaN(periodSeconds)
+        ? "The unit drops out and starts again: either the bank is too small for it, or its protection trips; try one more lamp in parallel before suspecting the unit."
+        : Invariant($"The unit drops out and starts again every {periodSeconds:0.0} s: either the bank is too small for it, or its protection trips; try one more lamp in parallel before suspecting the unit.");
+
+    public static string Intermittent(double amps) => Invariant(
+        $"The current jumps to and fro (last {Amps(amps)}): a loose or arcing contact; switch off and look at plugs, switch, fuse holder and lamp sockets for scorching.");
+
     public static string Developing(double percent, double percentPerHour, double amps) => Invariant(
-        $"The current has risen {percent:0.#} % above what this unit should draw, to {Amps(amps)}, and climbs {percentPerHour:0.#} % an hour: a short is likely developing; feel for a part that grows warm, and be ready to switch off.");
+        $"The current has risen {percent:0.#} % above what this unit should draw, to {Amps(amps)}{(double.IsNaN(percentPerHour) ? "" : Invariant($", and climbs {percentPerHour:0.#} % an hour"))}: a short is likely developing; look for a part that runs hot, and be ready to switch off.");
 
     public static string FallingSlowly(double percent, double amps) => Invariant(
         $"The current has sunk {percent:0.#} % below what was expected, to {Amps(amps)}: often a long warm-up, else a part that fades; compare with the prediction before the unit goes back.");

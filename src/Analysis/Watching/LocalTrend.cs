@@ -38,6 +38,9 @@ internal sealed class LocalTrend
         last = seconds;
     }
 
+    /// <summary>Starts on a known line.</summary>
+    public void Begin(double seconds, double value, double slopePerSecond) => (level, slope, last) = (value, slopePerSecond, seconds);
+
     public void Restart() => (level, slope) = (double.NaN, 0);
 
     public void Transfer(StateStream state)

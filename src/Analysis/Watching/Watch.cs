@@ -4,29 +4,28 @@ namespace Lampwarden.Analysis.Watching;
 /// A watch over one bench for one run. Give it every observation in order; it answers with what that observation changed among the findings.
 /// It knows no clock and draws no random number: the same observations give the same findings, bit for bit. Not safe for use by two threads at once.
 /// </summary>
-public sealed class Watch
+public sealed partial class Watch
 {
-    private const int StateVersion = 1;
+    private const int StateVersion = 2;
     private const double LeastSettleSeconds = 5;
-    private const double LearnSeconds = 300;
-    private const double LeastSd = 0.003;
 
     private readonly WatchSettings settings;
     private readonly FindingBook book = new();
     private readonly MeterTrouble trouble;
     private readonly AbsoluteLimits limits;
-    private readonly StepChannel steps = new();
-    private readonly SlowChannel slow = new();
+    private readonly MeterNoise noise;
+    private readonly MainsView mains;
+    private readonly SuddenChannel sudden = new();
+    private readonly Excursion excursion = new();
     private readonly LocalTrend trend = new();
+    private readonly SlowChannel slow;
     private Expectation? expectation;
     private double firstSeconds = double.NaN;
     private double lastSeconds;
-    private double learnFrom = double.NaN;
-    private double lastLog = double.NaN;
-    private double noise = 0.003;
+    private double lastReadingSeconds = double.NaN;
+    private double announcedSeconds = double.NegativeInfinity;
+    private double holdUntilSeconds = double.NegativeInfinity;
     private long readings;
-    private int stepFinding;
-    private int slowFinding;
 
     /// <summary>Prepares a watch.</summary>
     /// <exception cref="ArgumentException">A setting is outside its range.</exception>
@@ -38,13 +37,16 @@ public sealed class Watch
         expectation = settings.Expectation;
         trouble = new MeterTrouble(settings, book);
         limits = new AbsoluteLimits(book);
+        noise = new MeterNoise(settings.ReadingsPerSecond);
+        mains = new MainsView(settings.NominalMainsVolts);
+        slow = new SlowChannel(settings.MainsMeasured);
+        AssumeExponent();
     }
 
     /// <summary>How far the watch has come.</summary>
     public WatchPhase Phase =>
         !Settled(lastSeconds) ? WatchPhase.Settling
-        : double.IsNaN(learnFrom) || lastSeconds - learnFrom < LearnSeconds ? WatchPhase.Learning
-        : WatchPhase.Watching;
+        : slow.Armed ? WatchPhase.Watching : WatchPhase.Learning;
 
     /// <summary>Every finding of the run in its latest form, oldest first.</summary>
     public IReadOnlyList<Finding> Findings => book.All;
@@ -69,7 +71,7 @@ public sealed class Watch
             {
                 WatchPhase.Settling => "The filaments and the unit are coming up; only the absolute limits speak yet.",
                 WatchPhase.Learning => "Learning what this unit draws; sudden faults are already watched for.",
-                _ => $"All is well: the unit draws {Advice.Amps(Math.Exp(slow.Level))}, as it should.",
+                _ => $"All is well: the unit draws {Advice.Amps(LevelAmps)}, as it should.",
             };
         }
     }
@@ -95,24 +97,34 @@ public sealed class Watch
     public IReadOnlyList<FindingChange> Announce(double seconds, Announcement what)
     {
         ArgumentNullException.ThrowIfNull(what);
+        var old = expectation;
         if (what.Expectation is not null || what.Kind == AnnouncementKind.LoadChanged)
         {
             expectation = what.Expectation;
         }
 
-        steps.Reset();
-        slow.Restart();
+        announcedSeconds = seconds;
+        AssumeExponent();
+        excursion.End();
+        sudden.Reset();
         trend.Restart();
-        firstSeconds = seconds;
-        learnFrom = double.NaN;
-        ClearIfStanding(ref stepFinding, seconds);
-        ClearIfStanding(ref slowFinding, seconds);
+        Forgive(seconds);
+        var known = what.Kind == AnnouncementKind.LampSwitched && old is not null && what.Expectation is not null;
+        if (known)
+        {
+            slow.ShiftLevel(Math.Log(what.Expectation!.SteadyAmps / old!.SteadyAmps));
+        }
+        else
+        {
+            Relearn(seconds, what.Kind == AnnouncementKind.LoadChanged ? LoadWarmUpSd : SwitchWarmUpSd);
+        }
+
         return book.Take();
     }
 
     /// <summary>What the run says about the unit if it ends now.</summary>
     public Judgement Judge(double endSeconds) => Watching.Judge.Decide(
-        settings, book.All, endSeconds, trouble.GapSeconds + trouble.OpenGapSeconds(endSeconds), readings, Math.Exp(slow.Level));
+        settings, book.All, endSeconds, trouble.GapSeconds + trouble.OpenGapSeconds(endSeconds), readings, LevelAmps);
 
     /// <summary>The whole state, to be restored after a restart without any change in later findings.</summary>
     public byte[] Save() => StateStream.Save(Transfer);
@@ -131,6 +143,16 @@ public sealed class Watch
 
     private bool Settled(double seconds) => seconds - firstSeconds >= SettleSeconds;
 
+    private double LevelAmps => slow.Started ? Math.Exp(slow.Foretell(lastSeconds, 0)) : double.NaN;
+
+    private void AssumeExponent()
+    {
+        if (expectation is { } expected && double.IsFinite(expected.MainsExponent))
+        {
+            slow.Assume(expected.MainsExponent, 0.4);
+        }
+    }
+
     private void Weigh(in Observation o)
     {
         readings++;
@@ -140,33 +162,30 @@ public sealed class Watch
             firstSeconds = seconds;
         }
 
-        var scale = MainsScale(o);
         if (expectation is not null)
         {
-            limits.Observe(seconds, o.LineAmps, scale, Settled(seconds), expectation);
+            limits.Observe(seconds, o.LineAmps, MainsScale(o), Settled(seconds), expectation);
         }
 
-        if (!Settled(seconds))
+        if (settings.MainsMeasured)
+        {
+            mains.Observe(seconds, o.MainsVolts, noise.Pole);
+            WatchMains(seconds);
+        }
+
+        if (!Settled(seconds) || seconds < holdUntilSeconds)
         {
             return;
         }
 
-        learnFrom = double.IsNaN(learnFrom) ? seconds : learnFrom;
-        var floor = Math.Max(settings.Meter.CountAmps / 2, 1e-6);
-        var logAmps = Math.Log(Math.Max(o.LineAmps, floor) / scale);
-        LearnNoise(logAmps);
-        var sd = Math.Max(noise, LeastSd);
-        var stepped = !double.IsNaN(slow.Level) && WeighStep(o, logAmps, sd);
-        trend.Follow(seconds, logAmps, 3 * sd);
-        if (stepped)
+        if (seconds - lastReadingSeconds > 2.5 / settings.ReadingsPerSecond)
         {
-            return;
+            sudden.Skip();
+            noise.Skip();
         }
 
-        if (!steps.InDoubt)
-        {
-            WeighSlow(o, logAmps);
-        }
+        lastReadingSeconds = seconds;
+        WeighReading(o);
     }
 
     private double MainsScale(in Observation o)
@@ -178,85 +197,6 @@ public sealed class Watch
 
         var exponent = expectation is { } expected && double.IsFinite(expected.MainsExponent) ? expected.MainsExponent : 0.6;
         return Math.Pow(o.MainsVolts / settings.NominalMainsVolts, exponent);
-    }
-
-    private void LearnNoise(double logAmps)
-    {
-        if (!double.IsNaN(lastLog))
-        {
-            var step = Math.Min(Math.Abs(logAmps - lastLog), 4 * noise);
-            noise += (step * 0.886 - noise) * 0.01; // mean |difference| of two normals is 1.128 sd
-        }
-
-        lastLog = logAmps;
-    }
-
-    private bool WeighStep(in Observation o, double logAmps, double sd)
-    {
-        var residual = logAmps - slow.Level;
-        var jump = LesserOf(residual - slow.Excess, logAmps - trend.At(o.Seconds));
-        var direction = steps.Observe(o.Seconds, jump, sd);
-        if (direction == 0)
-        {
-            return false;
-        }
-
-        var percent = (Math.Exp(residual) - 1) * 100;
-        var onset = direction > 0 ? steps.OnsetUpSeconds : steps.OnsetDownSeconds;
-        Dictionary<string, double> evidence = new()
-        {
-            ["lineAmps"] = o.LineAmps,
-            ["expectedAmps"] = o.LineAmps / Math.Exp(residual),
-            ["changePercent"] = percent,
-        };
-        steps.Reset();
-        if (!limits.ShortedStands)
-        {
-            ClearIfStanding(ref stepFinding, o.Seconds);
-            stepFinding = direction > 0
-                ? book.Raise(Signature.HardShort, Severity.Critical, onset, o.Seconds, Advice.StepUp(percent, o.LineAmps), evidence)
-                : percent < -90
-                    ? book.Raise(Signature.OpenCircuit, Severity.Critical, onset, o.Seconds, Advice.Open(o.LineAmps), evidence)
-                    : book.Raise(Signature.LampOut, Severity.Warning, onset, o.Seconds, Advice.StepDown(-percent, o.LineAmps), evidence);
-        }
-
-        slow.Restart();
-        trend.Restart();
-        return true;
-    }
-
-    private void WeighSlow(in Observation o, double logAmps)
-    {
-        var direction = slow.Observe(o.Seconds, logAmps);
-        if (direction == 0 || book.Stands(slowFinding))
-        {
-            return;
-        }
-
-        var percent = (Math.Exp(slow.Excess) - 1) * 100;
-        var perHour = slow.SlopePerHour(o.Seconds) * 100;
-        Dictionary<string, double> evidence = new()
-        {
-            ["lineAmps"] = o.LineAmps,
-            ["excessPercent"] = percent,
-            ["risePercentPerHour"] = perHour,
-        };
-        slowFinding = direction > 0
-            ? book.Raise(Signature.DevelopingShort, Severity.Critical, slow.OnsetUpSeconds, o.Seconds, Advice.Developing(percent, perHour, o.LineAmps), evidence)
-            : book.Raise(Signature.OffPrediction, Severity.Notice, slow.OnsetDownSeconds, o.Seconds, Advice.FallingSlowly(-percent, o.LineAmps), evidence);
-    }
-
-    /// <summary>The smaller in size of two that agree in sign, else nothing: a jump must stand out from the level and from the trend.</summary>
-    private static double LesserOf(double a, double b) => a * b <= 0 ? 0 : Math.Abs(a) < Math.Abs(b) ? a : b;
-
-    private void ClearIfStanding(ref int number, double seconds)
-    {
-        if (book.Stands(number))
-        {
-            book.Clear(number, seconds);
-        }
-
-        number = 0;
     }
 
     private void Transfer(StateStream state)
@@ -271,16 +211,19 @@ public sealed class Watch
         book.Transfer(state);
         trouble.Transfer(state);
         limits.Transfer(state);
-        steps.Transfer(state);
-        slow.Transfer(state);
+        noise.Transfer(state);
+        mains.Transfer(state);
+        sudden.Transfer(state);
+        excursion.Transfer(state);
         trend.Transfer(state);
+        slow.Transfer(state);
         state.Field(ref firstSeconds);
         state.Field(ref lastSeconds);
-        state.Field(ref learnFrom);
-        state.Field(ref lastLog);
-        state.Field(ref noise);
+        state.Field(ref lastReadingSeconds);
+        state.Field(ref announcedSeconds);
+        state.Field(ref holdUntilSeconds);
         state.Field(ref readings);
-        state.Field(ref stepFinding);
-        state.Field(ref slowFinding);
+        TransferSudden(state);
+        TransferSlow(state);
     }
 }

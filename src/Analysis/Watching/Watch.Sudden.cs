@@ -1,0 +1,333 @@
+namespace Lampwarden.Analysis.Watching;
+
+public sealed partial class Watch
+{
+    private const double LeastSd = 0.003;
+    private const double TrendIgnored = 0.008;
+    private const double LoadWarmUpSd = 0.05;
+    private const double SwitchWarmUpSd = 0.02;
+    private const double AnnouncedGraceSeconds = 60;
+    private const double QuietSeconds = 90;
+    private const double FreshJump = 0.3;
+    private const double RelearnPauseSeconds = 5;
+    private const double BurstMemorySeconds = 1800;
+
+    // Without a mains reading a dip of the mains is a dip of the current: smaller steps must outlast it, and a tap change is none of the unit's business.
+    private const double DipShare = 0.16, DipSeconds = 90, TapShare = 0.022;
+
+    private int stepFinding;
+    private double stepOffset;
+    private int burstFinding;
+    private double lastBurstSeconds;
+    private int bursts;
+    private int mainsFinding;
+    private bool isReturn;
+    private bool excursionJoins;
+
+    private void WeighReading(in Observation o)
+    {
+        var seconds = o.Seconds;
+        var log = Math.Log(Math.Max(o.LineAmps, 1e-6));
+        if (!slow.Started || slow.AgeSeconds(seconds) < 3 * SlowChannel.BlockSeconds)
+        {
+            slow.Add(seconds, log, mains.Filtered, noise.WhiteSd);
+            return;
+        }
+
+        var model = slow.Model;
+        var foretold = slow.Foretell(seconds, mains.Now);
+        var sd = Math.Sqrt(Math.Max(noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance);
+        var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * mains.Unrest);
+        var trendNow = trend.At(seconds);
+        var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);
+        var cry = sudden.Observe(seconds, o.LineAmps, Math.Exp(foretold), excursion.Active ? 0 : offset, sd, extra, noise.Pole);
+        if (excursion.Active)
+        {
+            if (FollowExcursion(o, sd))
+            {
+                Accept(o, log);
+            }
+        }
+        else if (cry != SuddenCry.Nothing)
+        {
+            BeginExcursion(o, cry, sd);
+        }
+        else if (!sudden.InDoubt)
+        {
+            trend.Follow(seconds, sudden.Jump + offset, 3 * sd);
+            Accept(o, log);
+        }
+
+        ForgetBursts(seconds);
+    }
+
+    /// <summary>Learns from a reading that is not in doubt.</summary>
+    private void Accept(in Observation o, double log)
+    {
+        noise.Learn(log - slow.Foretell(o.Seconds, mains.Filtered), o.LineAmps);
+        if (slow.Add(o.Seconds, log, mains.Filtered, noise.WhiteSd))
+        {
+            WeighSlow(o);
+        }
+    }
+
+    private void BeginExcursion(in Observation o, SuddenCry cry, double sd)
+    {
+        slow.DropBlock();
+        if (o.Seconds - announcedSeconds < AnnouncedGraceSeconds)
+        {
+            Relearn(o.Seconds, LoadWarmUpSd);
+            return;
+        }
+
+        var onset = cry == SuddenCry.Up ? sudden.OnsetUpSeconds : cry == SuddenCry.Down ? sudden.OnsetDownSeconds : o.Seconds;
+        excursionJoins = false;
+        excursion.Begin(onset, o.Seconds, sudden.Jump, sd);
+        isReturn = stepOffset != 0 && Math.Abs(Math.Log(Math.Max(1 + sudden.Jump, 0.01)) + stepOffset) < 0.3 * Math.Abs(stepOffset);
+        var mayBeMains = !settings.MainsMeasured && Math.Abs(sudden.Jump) < DipShare && cry != SuddenCry.Burst;
+        if (!isReturn && !mayBeMains)
+        {
+            RaiseExcursion(o, cry == SuddenCry.Burst ? Signature.Intermittent : StepSignature(sudden.Jump));
+        }
+    }
+
+    /// <summary>Learns a new level, after a pause in which the change and the meter's filter run out.</summary>
+    private void Relearn(double seconds, double warmSd)
+    {
+        holdUntilSeconds = seconds + RelearnPauseSeconds;
+        excursion.End();
+        sudden.Reset();
+        trend.Restart();
+        noise.Skip();
+        slow.Restart(warmSd);
+    }
+
+    private void RaiseExcursion(in Observation o, Signature signature)
+    {
+        if (book.Stands(burstFinding))
+        {
+            excursion.Number = burstFinding;
+            return;
+        }
+
+        excursionJoins = book.Stands(riseFinding) && signature == Signature.HardShort && sudden.Jump < FreshJump;
+        if (excursionJoins)
+        {
+            excursion.Number = riseFinding;
+            return;
+        }
+
+        if (limits.ShortedStands && signature == Signature.HardShort)
+        {
+            return;
+        }
+
+        excursion.Number = book.Raise(signature, SeverityOf(signature, sudden.Jump), excursion.OnsetSeconds, o.Seconds, SuddenSentence(signature, o), Evidence(o));
+    }
+
+    /// <summary>Takes one reading of an excursion; true if it may be learned from.</summary>
+    private bool FollowExcursion(in Observation o, double sd)
+    {
+        var healthy = excursion.Follow(o.Seconds, sudden.Jump);
+        if (excursion.Climbs && !isReturn)
+        {
+            ConfirmClimb(o);
+            return false;
+        }
+
+        var signature = Classify();
+        if (excursion.Number == 0 && !isReturn && signature == Signature.Intermittent && excursion.Ups > 0 && excursion.Downs > 0)
+        {
+            RaiseExcursion(o, signature);
+        }
+
+        if (excursion.Number > 0 && !excursionJoins && signature != book[excursion.Number].Signature)
+        {
+            Rename(o, signature);
+        }
+
+        var patience = settings.MainsMeasured || Math.Abs(excursion.Step) >= DipShare ? Excursion.ResolveSeconds : DipSeconds;
+        if (!healthy && !excursion.IsOff && excursion.Stays(o.Seconds) && o.Seconds - excursion.CrySeconds >= patience)
+        {
+            ConfirmStep(o);
+        }
+        else if (o.Seconds - excursion.LastOutSeconds > QuietSeconds)
+        {
+            EndExcursion(o);
+        }
+
+        return healthy;
+    }
+
+    private Signature Classify()
+    {
+        if (excursion.LooksCycling)
+        {
+            return Signature.Cycling;
+        }
+
+        if (excursion.HasReturned || (excursion.Ups > 0 && excursion.Downs > 0))
+        {
+            return Signature.Intermittent;
+        }
+
+        var named = excursion.Number > 0 ? book[excursion.Number].Signature : Signature.Intermittent;
+        return named is Signature.Intermittent or Signature.Cycling ? named : StepSignature(excursion.Step == 0 ? sudden.Jump : excursion.Step);
+    }
+
+    private void Rename(in Observation o, Signature signature)
+    {
+        var (sentence, evidence, severity) = (SuddenSentence(signature, o), Evidence(o), SeverityOf(signature, sudden.Jump));
+        book.Amend(excursion.Number, old => old with { Signature = signature, Severity = severity, Explanation = sentence, Evidence = evidence });
+    }
+
+    private void ConfirmStep(in Observation o)
+    {
+        var step = excursion.Step;
+        var by = Math.Log(Math.Max(1 + step, 0.01));
+        var tap = !settings.MainsMeasured && Math.Abs(step) < TapShare && excursion.Number == 0;
+        if (isReturn)
+        {
+            ClearIfStanding(ref stepFinding, o.Seconds);
+            ClearIfStanding(ref riseFinding, o.Seconds);
+            stepOffset = 0;
+        }
+        else if (!tap)
+        {
+            if (excursion.Number == 0)
+            {
+                RaiseExcursion(o, StepSignature(step));
+            }
+
+            if (excursion.Number > 0 && !excursionJoins)
+            {
+                Rename(o, StepSignature(step));
+                stepFinding = excursion.Number;
+            }
+
+            stepOffset += by;
+        }
+
+        excursion.End();
+        sudden.Reset();
+        trend.Restart();
+        slow.ShiftLevel(by);
+    }
+
+    /// <summary>No step but a climb too fast for blocks: it joins or becomes the standing rise, and the trend is told so as not to cry again.</summary>
+    private void ConfirmClimb(in Observation o)
+    {
+        if (excursion.Number == 0 && !book.Stands(riseFinding))
+        {
+            RaiseExcursion(o, Signature.DevelopingShort);
+        }
+        else if (excursion.Number > 0)
+        {
+            Rename(o, Signature.DevelopingShort);
+        }
+
+        riseFinding = excursion.Number > 0 ? excursion.Number : riseFinding;
+
+        var (latest, slope, by) = (excursion.Latest, excursion.ClimbPerSecond, Math.Log(1 + excursion.Latest));
+        excursion.End();
+        sudden.Reset();
+        trend.Restart();
+        trend.Begin(o.Seconds, 0, slope / (1 + latest));
+        stepOffset += by;
+        slow.ShiftLevel(by);
+    }
+
+    private void EndExcursion(in Observation o)
+    {
+        if (excursion.Number > 0)
+        {
+            burstFinding = excursion.Number;
+            lastBurstSeconds = excursion.LastOutSeconds;
+            bursts++;
+            Rename(o, book[burstFinding].Signature);
+        }
+        else if (!isReturn && !settings.MainsMeasured && !book.Stands(riseFinding))
+        {
+            book.Raise(Signature.MainsShift, Severity.Notice, excursion.OnsetSeconds, o.Seconds, Advice.DipUnmeasured, Evidence(o));
+            book.Clear(book.All.Count, o.Seconds);
+        }
+
+        excursion.End();
+        sudden.Reset();
+        trend.Restart();
+    }
+
+    private void ForgetBursts(double seconds)
+    {
+        if (burstFinding > 0 && !excursion.Active && seconds - lastBurstSeconds > BurstMemorySeconds)
+        {
+            book.Clear(burstFinding, seconds);
+            burstFinding = bursts = 0;
+        }
+    }
+
+    private void WatchMains(double seconds)
+    {
+        if (mains.AwayInARow == 2 && !book.Stands(mainsFinding))
+        {
+            var percent = (Math.Exp(mains.Departure) - 1) * 100;
+            mainsFinding = book.Raise(Signature.MainsShift, Severity.Notice, seconds, seconds, Advice.Mains(percent), new()
+            {
+                ["mainsChangePercent"] = percent,
+                ["mainsVolts"] = settings.NominalMainsVolts * Math.Exp(mains.Now),
+            });
+        }
+        else if (mains.AwayInARow == 0 && book.Stands(mainsFinding))
+        {
+            book.Clear(mainsFinding, seconds);
+        }
+    }
+
+    private static Signature StepSignature(double jump) =>
+        jump > 0 ? Signature.HardShort : jump < Excursion.OffShare - 1 ? Signature.OpenCircuit : Signature.LampOut;
+
+    private static Severity SeverityOf(Signature signature, double jump) =>
+        signature == Signature.LampOut || (signature == Signature.HardShort && jump < 0.05) ? Severity.Warning : Severity.Critical;
+
+    private string SuddenSentence(Signature signature, in Observation o)
+    {
+        var percent = (excursion.Step == 0 ? sudden.Jump : excursion.Step) * 100;
+        return signature switch
+        {
+            Signature.HardShort => Advice.StepUp(percent, o.LineAmps),
+            Signature.OpenCircuit => Advice.Open(o.LineAmps),
+            Signature.LampOut => Advice.StepDown(-percent, o.LineAmps),
+            Signature.DevelopingShort => Advice.Developing(percent, excursion.ClimbPerSecond * 3600 * 100, o.LineAmps),
+            Signature.Cycling => Advice.Cycling(excursion.Cycle.PeriodSeconds),
+            _ => Advice.Intermittent(o.LineAmps),
+        };
+    }
+
+    private Dictionary<string, double> Evidence(in Observation o)
+    {
+        var evidence = new Dictionary<string, double>
+        {
+            ["lineAmps"] = o.LineAmps,
+            ["expectedAmps"] = Math.Exp(slow.Foretell(o.Seconds, mains.Now)),
+            ["changePercent"] = (excursion.Step == 0 ? sudden.Jump : excursion.Step) * 100,
+        };
+        if (excursion.Edges >= 2)
+        {
+            (evidence["periodSeconds"], evidence["dutyShare"]) = excursion.Cycle;
+        }
+
+        return evidence;
+    }
+
+    private void TransferSudden(StateStream state)
+    {
+        state.Field(ref stepFinding);
+        state.Field(ref stepOffset);
+        state.Field(ref burstFinding);
+        state.Field(ref lastBurstSeconds);
+        state.Field(ref bursts);
+        state.Field(ref mainsFinding);
+        state.Field(ref isReturn);
+        state.Field(ref excursionJoins);
+    }
+}

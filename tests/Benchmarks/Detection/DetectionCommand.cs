@@ -1,0 +1,242 @@
+using System.Diagnostics;
+using System.Globalization;
+using static System.FormattableString;
+
+namespace Lampwarden.Benchmarks.Detection;
+
+/// <summary>Runs a corpus through the watch, the plain limits and the oracles, and prints the score table.</summary>
+public static class DetectionCommand
+{
+    private sealed record Request(CorpusOptions Options, int Runs, int NominalRuns, bool Mains, bool Oracles, bool Baselines, string? Only, bool Verbose, int Threads);
+
+    public static int Run(string[] arguments)
+    {
+        ArgumentNullException.ThrowIfNull(arguments);
+        string? Value(string name) => Array.IndexOf(arguments, name) is >= 0 and var at && at + 1 < arguments.Length ? arguments[at + 1] : null;
+        double Number(string name, double otherwise) => Value(name) is { } text ? double.Parse(text, CultureInfo.InvariantCulture) : otherwise;
+        bool Has(string name) => arguments.Contains(name);
+        var runs = (int)Number("--runs", 40);
+        var request = new Request(
+            new CorpusOptions((int)Number("--corpus", 1), Has("--shifted"), Number("--rate", 2)),
+            runs, (int)Number("--nominal", runs), !Has("--no-mains"), !Has("--no-oracles"), !Has("--no-baselines"), Value("--only"), Has("--verbose"),
+            (int)Number("--threads", 1));
+        var clock = Stopwatch.StartNew();
+        Console.WriteLine(Invariant($"# Corpus {request.Options.Corpus}{(request.Options.Shifted ? " shifted" : "")}, {request.Options.Rate} readings/s, mains {(request.Mains ? "measured" : "not measured")}"));
+        if (request.NominalRuns > 0)
+        {
+            Nominal(request);
+        }
+
+        if (runs > 0)
+        {
+            Faulty(request);
+        }
+
+        Console.Error.WriteLine(Invariant($"took {clock.Elapsed.TotalSeconds:0} s"));
+        return 0;
+    }
+
+    private static IDetector[] Detectors(Request request) => request.Baselines
+        ? [new WatchDetector(), new FixedLimit("B1", 0, 1.25, 1), new FixedLimit("B1L", 0.75, 1.25, 3), new MinuteChange()]
+        : [new WatchDetector()];
+
+    private static void Nominal(Request request)
+    {
+        var names = Detectors(request).Select(detector => detector.Name).ToArray();
+        var tallies = names.Select(_ => new Tally()).ToArray();
+        Each(request, request.NominalRuns, index =>
+        {
+            var run = new CorpusRun();
+            run.Generate(request.Options, index, Fault.Nothing);
+            var detectors = Detectors(request);
+            for (var d = 0; d < detectors.Length; d++)
+            {
+                var tally = Watch(detectors[d], run, request, index);
+                lock (tallies)
+                {
+                    tallies[d].Add(tally);
+                }
+            }
+        });
+        Console.WriteLine();
+        Console.WriteLine(Invariant($"## False unit-fault episodes per 1,000 h in {tallies[0].Hours:0} nominal hours"));
+        Console.WriteLine();
+        Console.WriteLine("| detector | all | 95 % interval | upward | downward | coverage % | mains events named |");
+        Console.WriteLine("| --- | --- | --- | --- | --- | --- | --- |");
+        for (var d = 0; d < names.Length; d++)
+        {
+            var t = tallies[d];
+            var (low, high) = Score.PoissonInterval(t.Up + t.Down);
+            var per = 1000 / t.Hours;
+            Console.WriteLine(Invariant($"| {names[d]} | {(t.Up + t.Down) * per:0.00} | {low * per:0.00}-{high * per:0.00} | {t.Up * per:0.00} | {t.Down * per:0.00} | {t.ArmedHours / t.Hours * 100:0.0} | {t.Mains} |"));
+        }
+    }
+
+    private sealed class Tally
+    {
+        public int Up, Down, Mains;
+        public double Hours, ArmedHours;
+
+        public void Add(Tally other)
+        {
+            Up += other.Up;
+            Down += other.Down;
+            Mains += other.Mains;
+            Hours += other.Hours;
+            ArmedHours += other.ArmedHours;
+        }
+    }
+
+    private static Tally Watch(IDetector detector, CorpusRun run, Request request, int index)
+    {
+        var tally = new Tally { Hours = run.Hours };
+        var last = double.NegativeInfinity;
+        var armed = 0;
+        var announced = false;
+        detector.Start(run, request.Mains);
+        for (var i = 0; i < run.Count; i++)
+        {
+            var t = run.Seconds(i);
+            if (!announced && t >= run.AnnouncedSeconds)
+            {
+                announced = true;
+                detector.Announce(t);
+            }
+
+            var cry = detector.Observe(t, run.Amps[i], request.Mains ? run.Volts[i] : double.NaN);
+            armed += detector.Armed ? 1 : 0;
+            if (cry == Cry.Mains)
+            {
+                tally.Mains++;
+            }
+
+            if (cry is Cry.Up or Cry.Down)
+            {
+                if (t - last > Score.EpisodeSeconds)
+                {
+                    (tally.Up, tally.Down) = cry == Cry.Up ? (tally.Up + 1, tally.Down) : (tally.Up, tally.Down + 1);
+                    if (request.Verbose && detector is WatchDetector watch)
+                    {
+                        Console.WriteLine(Invariant($"run {index} {t / 3600:0.00} h {watch.Called} {string.Join(' ', watch.Finding.Evidence.Select(pair => Invariant($"{pair.Key}={pair.Value:0.####}")))} | sag {run.InSag[i]} garbled {run.Garbled[i]} load {run.Truth.LoadSeconds / 3600:0.00} gamma {run.Truth.Gamma:0.00} noise {run.Truth.NoiseSd * 100:0.00} a1 {run.Truth.WarmA1 * 100:0.0} T1 {run.Truth.WarmT1 / 60:0} a2 {run.Truth.WarmA2 * 100:0.00} T2 {run.Truth.WarmT2 / 60:0}"));
+                    }
+                }
+
+                last = t;
+            }
+        }
+
+        tally.ArmedHours = armed / run.Rate / 3600;
+        return tally;
+    }
+
+    private static void Faulty(Request request)
+    {
+        Console.WriteLine();
+        Console.WriteLine("## Delay from onset, seconds: median / 95 %, missed %, right name 10 s after the alarm");
+        Console.WriteLine();
+        Console.WriteLine("| fault | detector | trials | median | 95 % | missed % | dropped | excess % | right name % | oracle | cautious | median / oracle | median / cautious | 95 % / cautious 95 % |");
+        Console.WriteLine("| --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- |");
+        var names = Detectors(request).Select(detector => detector.Name).ToArray();
+        var (right, named) = (0, 0);
+        foreach (var fault in Fault.All.Where(fault => request.Only is null || fault.Name.Contains(request.Only, StringComparison.Ordinal)))
+        {
+            var trials = names.Select(_ => new Trial[request.Runs]).ToArray();
+            Each(request, request.Runs, index =>
+            {
+                var run = new CorpusRun();
+                var (oracle, cautious) = (double.NaN, double.NaN);
+                if (request.Oracles)
+                {
+                    run.Generate(request.Options with { Clean = true }, index, fault);
+                    oracle = new Oracle(false, request.Mains).Delay(run);
+                    cautious = new Oracle(true, request.Mains).Delay(run);
+                }
+
+                run.Generate(request.Options, index, fault);
+                var detectors = Detectors(request);
+                for (var d = 0; d < detectors.Length; d++)
+                {
+                    trials[d][index] = Try(detectors[d], run, request) with { Oracle = oracle, Cautious = cautious };
+                }
+            });
+            for (var d = 0; d < names.Length; d++)
+            {
+                Print(fault, names[d], trials[d]);
+            }
+
+            if (fault.Kind != FaultKind.Sag)
+            {
+                right += trials[0].Count(trial => double.IsFinite(trial.DelaySeconds) && Score.IsRight(fault.Kind, trial.Called));
+                named += trials[0].Count(trial => double.IsFinite(trial.DelaySeconds));
+            }
+        }
+
+        Console.WriteLine();
+        Console.WriteLine(Invariant($"Right name 10 s after the alarm over all faulty runs: {100.0 * right / Math.Max(1, named):0.0} % of {named}."));
+    }
+
+    private static Trial Try(IDetector detector, CorpusRun run, Request request)
+    {
+        detector.Start(run, request.Mains);
+        var (alarm, excess) = (double.NaN, 0.0);
+        for (var i = 0; i < run.Count; i++)
+        {
+            var t = run.Seconds(i);
+            var cry = detector.Observe(t, run.Amps[i], request.Mains ? run.Volts[i] : double.NaN);
+            if (!double.IsNaN(alarm))
+            {
+                if (t >= alarm + 10)
+                {
+                    break;
+                }
+
+                continue;
+            }
+
+            if (cry is not (Cry.Up or Cry.Down))
+            {
+                continue;
+            }
+
+            if (t < run.Truth.OnsetSeconds)
+            {
+                if (t > run.Truth.OnsetSeconds - Score.DropSeconds)
+                {
+                    return new Trial(double.NaN, 0, "", 0, 0);
+                }
+
+                continue;
+            }
+
+            if (!run.Garbled[i])
+            {
+                (alarm, excess) = (t, run.Fault.Excess(t - run.Truth.OnsetSeconds));
+            }
+        }
+
+        var delay = alarm - run.Truth.OnsetSeconds;
+        return double.IsNaN(alarm) || delay > run.Fault.HorizonSeconds
+            ? new Trial(double.PositiveInfinity, double.NaN, "", 0, 0)
+            : new Trial(delay, excess, detector.Called, 0, 0);
+    }
+
+    private static void Print(Fault fault, string name, Trial[] trials)
+    {
+        var kept = trials.Where(trial => !double.IsNaN(trial.DelaySeconds)).ToArray();
+        var median = Score.Quantile(kept.Select(trial => trial.DelaySeconds), 0.5);
+        var late = Score.Quantile(kept.Select(trial => trial.DelaySeconds), 0.95);
+        var oracle = Score.Quantile(trials.Select(trial => trial.Oracle), 0.5);
+        var cautious = Score.Quantile(trials.Select(trial => trial.Cautious), 0.5);
+        var cautiousLate = Score.Quantile(trials.Select(trial => trial.Cautious), 0.95);
+        var found = kept.Where(trial => double.IsFinite(trial.DelaySeconds)).ToArray();
+        var missed = kept.Length == 0 ? 0 : 100.0 * (kept.Length - found.Length) / kept.Length;
+        var named = found.Length == 0 ? 0 : 100.0 * found.Count(trial => Score.IsRight(fault.Kind, trial.Called)) / found.Length;
+        var excess = Score.Quantile(found.Select(trial => trial.Excess), 0.5) * 100;
+        var digits = median < 100 ? "0.0" : "0";
+        Console.WriteLine(Invariant($"| {fault.Name} | {name} | {kept.Length} | {Score.Show(median, digits)} | {Score.Show(late, digits)} | {missed:0.#} | {trials.Length - kept.Length} | {Score.Show(excess, "0.0")} | {named:0.#} | {Score.Show(oracle, digits)} | {Score.Show(cautious, digits)} | {Score.Show(median / oracle, "0.00")} | {Score.Show(median / cautious, "0.00")} | {Score.Show(late / cautiousLate, "0.00")} |"));
+        Console.Out.Flush();
+    }
+
+    private static void Each(Request request, int count, Action<int> work) =>
+        Parallel.For(0, count, new ParallelOptions { MaxDegreeOfParallelism = request.Threads }, work);
+}
