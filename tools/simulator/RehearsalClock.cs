@@ -13,13 +13,15 @@ public sealed class RehearsalClock : FakeTimeProvider, IDisposable
     // The largest step a reader of the clock may see, whatever the computer does meanwhile.
     private const double LongestStepSeconds = 0.1;
 
-    // So long, in real time, a pulse is waited for; a cable that is pulled gives none for good.
+    // So long, in real time, a pulse is waited for: the first while programs start, later ones until a cable must be pulled.
+    private static readonly TimeSpan FirstPatience = TimeSpan.FromSeconds(5);
     private static readonly TimeSpan Patience = TimeSpan.FromMilliseconds(400);
 
     private readonly CancellationTokenSource _over = new();
     private readonly Thread _thread;
     private readonly double _pulseEverySeconds;
-    private long _pulseStamp = Stopwatch.GetTimestamp();
+    private long _pulseStamp;
+    private bool _pulsed;
     private double _sincePulseSeconds;
 
     /// <summary>Makes a clock that stands at the present until <see cref="Begin"/>.</summary>
@@ -37,13 +39,18 @@ public sealed class RehearsalClock : FakeTimeProvider, IDisposable
     public double Speed { get; }
 
     /// <summary>Lets the clock run. Once.</summary>
-    public void Begin() => _thread.Start();
+    public void Begin()
+    {
+        _pulseStamp = Stopwatch.GetTimestamp();
+        _thread.Start();
+    }
 
     /// <summary>Says that the bench was asked just now. Safe from any thread.</summary>
     public void Pulse()
     {
         Interlocked.Exchange(ref _pulseStamp, Stopwatch.GetTimestamp());
         Interlocked.Exchange(ref _sincePulseSeconds, 0);
+        Volatile.Write(ref _pulsed, true);
     }
 
     /// <summary>Stops the clock; timers that are not due yet never are.</summary>
@@ -68,7 +75,7 @@ public sealed class RehearsalClock : FakeTimeProvider, IDisposable
             var step = Math.Min(Stopwatch.GetElapsedTime(last, now).TotalSeconds * Speed, Math.Max(LongestStepSeconds, Speed * 0.001));
             last = now;
             if (Interlocked.CompareExchange(ref _sincePulseSeconds, 0, 0) + step > _pulseEverySeconds
-                && Stopwatch.GetElapsedTime(Interlocked.Read(ref _pulseStamp), now) < Patience)
+                && Stopwatch.GetElapsedTime(Interlocked.Read(ref _pulseStamp), now) < (Volatile.Read(ref _pulsed) ? Patience : FirstPatience))
             {
                 continue;
             }
