@@ -15,12 +15,15 @@ internal sealed class EventOutlet
     private readonly Channel<MeterEvent> _channel = Channel.CreateBounded<MeterEvent>(
         new BoundedChannelOptions(1024) { SingleReader = true, FullMode = BoundedChannelFullMode.Wait });
 
+    private readonly double _windowSeconds;
     private long _sequence;
+    private bool _completed;
 
-    public EventOutlet(SessionClock clock, HealthBook health)
+    public EventOutlet(SessionClock clock, HealthBook health, double windowSeconds)
     {
         Clock = clock;
         Health = health;
+        _windowSeconds = windowSeconds;
     }
 
     public SessionClock Clock { get; }
@@ -35,7 +38,8 @@ internal sealed class EventOutlet
         var utc = Clock.Utc(firstByteStamp);
         lock (_gate)
         {
-            Emit(new MeterEvent(value.Kind, _sequence++, value.Value, utc, Clock.ElapsedSeconds(firstByteStamp), latencySeconds, Digits: value.Digits));
+            Emit(new MeterEvent(value.Kind, _sequence++, value.Value, utc, Clock.ElapsedSeconds(firstByteStamp), latencySeconds,
+                Detail: value.Detail, Digits: value.Digits, WindowSeconds: _windowSeconds));
         }
     }
 
@@ -51,7 +55,20 @@ internal sealed class EventOutlet
     }
 
     /// <summary>Waits until everything given so far lies in the channel.</summary>
-    public async ValueTask FlushAsync(CancellationToken cancellationToken)
+    public ValueTask FlushAsync(CancellationToken cancellationToken)
+    {
+        lock (_gate)
+        {
+            if (_waiting.Count == 0)
+            {
+                return ValueTask.CompletedTask;
+            }
+        }
+
+        return FlushWaitingAsync(cancellationToken);
+    }
+
+    private async ValueTask FlushWaitingAsync(CancellationToken cancellationToken)
     {
         while (await _channel.Writer.WaitToWriteAsync(cancellationToken))
         {
@@ -71,10 +88,22 @@ internal sealed class EventOutlet
     }
 
     /// <summary>Nothing more will come: because of a fault of ours, or null at a normal end.</summary>
-    public void Complete(Exception? fault) => _channel.Writer.TryComplete(fault);
+    public void Complete(Exception? fault)
+    {
+        lock (_gate)
+        {
+            _completed = true;
+            _channel.Writer.TryComplete(fault);
+        }
+    }
 
     private void Emit(in MeterEvent one)
     {
+        if (_completed)
+        {
+            return;
+        }
+
         Health.Event(one);
         if (_waiting.Count > 0 || !_channel.Writer.TryWrite(one))
         {

@@ -22,6 +22,8 @@ internal sealed class HealthBook
     private long _used;
     private long _passedOver;
     private long _skipped;
+    private long _same;
+    private double _lastValue = double.NaN;
     private long _intervalCount;
     private long _latencyCount;
     private double _longestLatency = double.NaN;
@@ -47,6 +49,8 @@ internal sealed class HealthBook
             }
 
             _lastReading = one.ElapsedSeconds;
+            _same = one.Value == _lastValue ? _same + 1 : 1;
+            _lastValue = one.Value;
             _latencies[_latencyCount++ % Window] = one.LatencySeconds;
             _longestLatency = one.LatencySeconds > _longestLatency ? one.LatencySeconds
                 : double.IsNaN(_longestLatency) ? one.LatencySeconds : _longestLatency;
@@ -160,6 +164,7 @@ internal sealed class HealthBook
                 LinesPassedOver = _passedOver,
                 LinesRefused = ByReason(_refused),
                 SkippedPolls = _skipped,
+                SameReadings = _same,
                 RatePerSecond = 1 / mean,
                 JitterSeconds = deviation,
                 LatencySeconds = MeanAndDeviation(_latencies.AsSpan(0, (int)Math.Min(_latencyCount, Window))).Mean,

@@ -48,6 +48,9 @@ public sealed record MeterHealth
     /// <summary>Longest time from question to answer since the session began, in seconds; NaN before one reading.</summary>
     public double LongestLatencySeconds { get; init; } = double.NaN;
 
+    /// <summary>How many readings in a row have been the same to the last digit, the newest included. A held display shows no noise.</summary>
+    public long SameReadings { get; init; }
+
     /// <summary>How often the wall clock jumped by more than half a second against the monotonic clock.</summary>
     public int ClockSteps { get; init; }
 

@@ -40,6 +40,13 @@ public sealed class MeterOptions
     /// <summary>Seconds to wait for an answer before the poll becomes a gap; 0.05 to 60, in real time even in a rehearsal.</summary>
     [Range(0.05, 60.0)]
     public double ReplyTimeoutSeconds { get; set; } = 1;
+
+    /// <summary>
+    /// Line current with scpi: when the current rises from nothing, so many seconds are polled as fast as the meter answers (at most 100 a
+    /// second), because inrush is over soon; 0 to 600, 0 for never. A free-running meter keeps its own pace.
+    /// </summary>
+    [Range(0.0, 600.0)]
+    public double SwitchOnSeconds { get; set; } = 5;
 }
 
 /// <summary>A meter's stated accuracy: a bound of percent of reading plus counts, as makers print it.</summary>
@@ -93,24 +100,4 @@ public sealed class TransportOptions
 
     /// <summary>Serial only: drive RTS to power an isolated cable; null leaves the line alone.</summary>
     public bool? Rts { get; set; }
-}
-
-/// <summary>scpi (question and answer) or lines (the meter talks by itself).</summary>
-public sealed class ProtocolOptions
-{
-    /// <summary>scpi or lines.</summary>
-    [AllowedValues("scpi", "lines")]
-    public string Kind { get; set; } = "scpi";
-
-    /// <summary>Scpi: the question whose answer is a number. A semicolon chain such as INITiate;:FETCh? is allowed.</summary>
-    public string Query { get; set; } = "READ?";
-
-    /// <summary>Scpi: commands sent after each opening, in order, such as CONFigure:CURRent:AC 3.</summary>
-    public IList<string> SetUp { get; set; } = [];
-
-    /// <summary>Scpi: whether *IDN? is asked at opening.</summary>
-    public bool Identify { get; set; } = true;
-
-    /// <summary>Lines: a .NET regular expression with the named groups value and, optionally, unit, coupling, overload, flags.</summary>
-    public string Pattern { get; set; } = "";
 }

@@ -1,46 +1,58 @@
 using System.Runtime.CompilerServices;
-using Lampwarden.Acquisition.Protocol;
 using Lampwarden.Acquisition.Transport;
-using Polly;
-using Polly.Retry;
 
 namespace Lampwarden.Acquisition;
 
 /// <summary>
-/// A meter for as long as it is wanted: opens it, asks or listens, and opens it again whenever it goes away.
-/// Every poll, and every attempt to reopen, gives exactly one event. Not thread-safe but for <see cref="Health"/> and disposal.
+/// A meter for as long as it is wanted: opened, asked or listened to, and opened again whenever it goes away. Every poll (or line, or
+/// silent interval), and every attempt to reopen, gives exactly one event. Sessions of one process with the same transport share its wire.
+/// Not thread-safe but for <see cref="Health"/>, <see cref="Hurry"/> and disposal.
 /// </summary>
 public sealed class MeterSession : IAsyncDisposable
 {
     private static readonly TimeSpan LongestEnd = TimeSpan.FromSeconds(5);
-    private readonly IMeterTransport _transport;
     private readonly MeterOptions _options;
     private readonly TimeProvider _time;
-    private readonly long _origin;
+    private readonly IMeterTransport? _transport;
     private readonly HealthBook _health = new();
+    private readonly Station _station;
     private readonly CancellationTokenSource _disposed = new();
-    private Task _producer = Task.CompletedTask;
+    private readonly Lock _gate = new();
+    private Func<Task>? _detach;
+    private Task? _detached;
     private int _begun;
+    private int _over;
 
     /// <summary>Makes a session; opens nothing yet.</summary>
-    /// <param name="options">The meter, valid.</param>
+    /// <param name="options">The meter, valid (see <see cref="MeterRules"/>); not to be changed any more.</param>
     /// <param name="time">Clock of polls and time stamps. Reply timeouts follow the real clock whatever this one does.</param>
-    /// <param name="transport">The wire; null makes it from the options.</param>
+    /// <param name="transport">A wire of this session's own; null makes it from the options, shared with other sessions on the same port.</param>
     /// <param name="originStamp">Time stamp of <paramref name="time"/> from which events count their seconds; null: now. Give two meters of a bench the same.</param>
     public MeterSession(MeterOptions options, TimeProvider time, IMeterTransport? transport = null, long? originStamp = null)
     {
         _options = options;
         _time = time;
-        _origin = originStamp ?? time.GetTimestamp();
-        _transport = transport ?? (options.Transport.Kind == "tcp" ? new TcpTransport(options.Transport) : new SerialTransport(options.Transport));
+        _transport = transport;
+        var clock = new SessionClock(time, originStamp ?? time.GetTimestamp(), _health);
+        _station = new Station(options, new EventOutlet(clock, _health, options.WindowSeconds));
+        foreach (var warning in MeterRules.Warnings(options))
+        {
+            _health.Problem(warning);
+        }
     }
 
     /// <summary>How the meter is doing now. Safe to ask from any thread at any time.</summary>
     public MeterHealth Health => _health.Snapshot();
 
     /// <summary>
+    /// Polls as fast as the meter answers for so long, at most 100 times a second: for the moment of switch-on. A free-running meter
+    /// keeps its own pace. The session does this by itself when the current rises from nothing (<see cref="MeterOptions.SwitchOnSeconds"/>).
+    /// </summary>
+    public void Hurry(TimeSpan time) => _station.Schedule.HurryFor(time);
+
+    /// <summary>
     /// Opens the meter and gives its events, for ever: trouble becomes gaps. Ends when the session is disposed.
-    /// An event's consumer that is slow holds the meter's polls back, nothing is lost; it should take them within about a second.
+    /// A consumer that is slow holds the meter back, nothing is dropped; it should take an event within about a second.
     /// </summary>
     /// <exception cref="OperationCanceledException">The token said stop.</exception>
     /// <exception cref="InvalidOperationException">The session is or was being read already.</exception>
@@ -51,14 +63,16 @@ public sealed class MeterSession : IAsyncDisposable
             throw new InvalidOperationException($"The session of meter '{_options.Name}' gives its events once. Make another session.");
         }
 
-        var outlet = new EventOutlet(new SessionClock(_time, _origin, _health), _health);
+        cancellationToken.ThrowIfCancellationRequested();
+        ObjectDisposedException.ThrowIf(_over != 0, this);
+        _detach = await MeterLines.AttachAsync(_station, _time, _transport);
         using var stop = CancellationTokenSource.CreateLinkedTokenSource(cancellationToken, _disposed.Token);
-        _producer = Task.Run(() => ProduceAsync(outlet, stop.Token), CancellationToken.None);
+        await using var whenStopped = stop.Token.UnsafeRegister(static outlet => ((EventOutlet)outlet!).Complete(null), _station.Outlet);
         try
         {
-            while (await outlet.Reader.WaitToReadAsync(CancellationToken.None))
+            while (await _station.Outlet.Reader.WaitToReadAsync(CancellationToken.None))
             {
-                while (outlet.Reader.TryRead(out var one))
+                while (_station.Outlet.Reader.TryRead(out var one))
                 {
                     yield return one;
                 }
@@ -68,94 +82,36 @@ public sealed class MeterSession : IAsyncDisposable
         }
         finally
         {
-            await stop.CancelAsync();
-            await _producer;
+            await DetachOnceAsync();
         }
     }
 
     /// <summary>Stops reading and closes the meter; comes back within seconds even when the driver does not.</summary>
     public async ValueTask DisposeAsync()
     {
+        if (Interlocked.Exchange(ref _over, 1) != 0)
+        {
+            return;
+        }
+
         await _disposed.CancelAsync();
         try
         {
-            await _producer.WaitAsync(LongestEnd);
-            _disposed.Dispose();
+            await DetachOnceAsync().WaitAsync(LongestEnd);
         }
         catch (TimeoutException)
         {
-            _health.Problem($"{_transport.Place} did not let itself be closed within {LongestEnd.TotalSeconds:0} s and was left behind");
+            _health.Problem($"{_options.Transport.Port} did not let itself be closed within {LongestEnd.TotalSeconds:0} s and was left behind");
         }
+
+        _disposed.Dispose();
     }
 
-    private async Task ProduceAsync(EventOutlet outlet, CancellationToken stop)
+    private Task DetachOnceAsync()
     {
-        Exception? fault = null;
-        try
+        lock (_gate)
         {
-            var reopening = Reopening(outlet);
-            while (true)
-            {
-                await reopening.ExecuteAsync(async token => await OpenAndRunAsync(outlet, token), stop);
-                // The wire was good and is gone: a breath before the first attempt, so that a flapping one cannot make us spin.
-                await Task.Delay(TimeSpan.FromMilliseconds(100), _time, stop);
-            }
-        }
-        catch (OperationCanceledException) when (stop.IsCancellationRequested)
-        {
-            // Told to stop.
-        }
-        catch (Exception unexpected)
-        {
-            fault = unexpected; // A fault of ours reaches the reader: nothing is swallowed here.
-        }
-
-        outlet.Complete(fault);
-    }
-
-    /// <summary>Returns when a wire that gave readings is gone; throws when it gave none, which makes the next attempt wait longer.</summary>
-    private async Task OpenAndRunAsync(EventOutlet outlet, CancellationToken stop)
-    {
-        var readingsBefore = _health.Readings;
-        await using var connection = await _transport.OpenAsync(stop);
-        if (_transport is SerialTransport { Shortcoming: { } shortcoming })
-        {
-            _health.Problem(shortcoming);
-        }
-
-        _health.Opened();
-        try
-        {
-            var protocol = new ScpiMeter(_options, outlet);
-            await protocol.RunAsync(new Wire(connection, _transport.Place, _time), stop);
-        }
-        catch (TransportException gone) when (_health.Readings > readingsBefore)
-        {
-            outlet.Gap(gone.Reason, gone.Message);
-            await outlet.FlushAsync(stop);
-        }
-        finally
-        {
-            _health.Closed();
+            return _detached ??= _detach?.Invoke() ?? Task.CompletedTask;
         }
     }
-
-    private ResiliencePipeline Reopening(EventOutlet outlet) => new ResiliencePipelineBuilder { TimeProvider = _time }
-        .AddRetry(new RetryStrategyOptions
-        {
-            ShouldHandle = new PredicateBuilder().Handle<TransportException>(),
-            MaxRetryAttempts = int.MaxValue,
-            BackoffType = DelayBackoffType.Exponential,
-            UseJitter = true,
-            Delay = TimeSpan.FromMilliseconds(250),
-            MaxDelay = TimeSpan.FromSeconds(5),
-            OnRetry = async attempt =>
-            {
-                var trouble = (TransportException)attempt.Outcome.Exception!;
-                _health.Problem(trouble.Message);
-                outlet.Gap(trouble.Reason, trouble.Message);
-                await outlet.FlushAsync(attempt.Context.CancellationToken);
-            },
-        })
-        .Build();
 }

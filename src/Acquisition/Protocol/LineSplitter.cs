@@ -1,3 +1,6 @@
+using System.Buffers;
+using System.Text;
+
 namespace Lampwarden.Acquisition.Protocol;
 
 /// <summary>
@@ -9,6 +12,7 @@ internal sealed class LineSplitter
     private const int Room = 8192;
     private readonly byte[] _buffer = new byte[Room];
     private readonly int _longest;
+    private readonly SearchValues<byte> _ends;
     private int _start;
     private int _end;
     private int _searched;      // bytes before this index hold no terminator
@@ -18,10 +22,12 @@ internal sealed class LineSplitter
     private bool _dropping;     // inside a line already found too long
 
     /// <param name="longest">Longest line in bytes that is passed on; at most 4096.</param>
-    public LineSplitter(int longest = 4096)
+    /// <param name="lineEnd">Characters each of which ends a line; empty for LF and CR.</param>
+    public LineSplitter(int longest = 4096, string lineEnd = "")
     {
         ArgumentOutOfRangeException.ThrowIfGreaterThan(longest, Room / 2);
         _longest = longest;
+        _ends = SearchValues.Create(lineEnd.Length == 0 ? "\n\r"u8 : Encoding.Latin1.GetBytes(lineEnd));
     }
 
     /// <summary>Bytes received that belong to no finished line yet.</summary>
@@ -29,6 +35,10 @@ internal sealed class LineSplitter
 
     /// <summary>The bytes of the unfinished line.</summary>
     public ReadOnlySpan<byte> Pending => _buffer.AsSpan(_start, _end - _start);
+
+    /// <summary>At least one more line has ended.</summary>
+    public bool HoldsLine => _buffer.AsSpan(_start, _end - _start).IndexOfAnyExcept(_ends) is >= 0 and var text
+        && _buffer.AsSpan(_start + text, _end - _start - text).ContainsAny(_ends);
 
     /// <summary>Where to read the next bytes to; never empty as long as <see cref="TryRead"/> is called until it says no.</summary>
     public Memory<byte> Free()
@@ -72,7 +82,7 @@ internal sealed class LineSplitter
         while (true)
         {
             var from = Math.Max(_start, _searched);
-            var found = _buffer.AsSpan(from, _end - from).IndexOfAny((byte)'\n', (byte)'\r');
+            var found = _buffer.AsSpan(from, _end - from).IndexOfAny(_ends);
             if (found < 0)
             {
                 _searched = _end;

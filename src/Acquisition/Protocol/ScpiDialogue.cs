@@ -4,10 +4,14 @@ using Lampwarden.Acquisition.Transport;
 
 namespace Lampwarden.Acquisition.Protocol;
 
-/// <summary>A line that came back, with the arrival of its first and last byte.</summary>
-internal readonly record struct Answer(byte[] Bytes, long FirstByteStamp, long LastByteStamp)
+/// <summary>A line that came back, with the arrival of its first and last byte, and the book that counted it.</summary>
+internal readonly record struct Answer(byte[] Bytes, long FirstByteStamp, long LastByteStamp, HealthBook Health)
 {
     public ReadOnlySpan<byte> Text => ScpiNumber.TrimBlanks(Bytes);
+
+    public void PassOver() => Health.LinePassedOver();
+
+    public void Refuse(GapReason reason) => Health.LineRefused(reason);
 
     public override string ToString() => Encoding.Latin1.GetString(Text);
 }
@@ -20,27 +24,36 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
 {
     // More lines than this between two questions is babble: the newest are refused and counted.
     private readonly Channel<Answer> _answers = Channel.CreateBounded<Answer>(new BoundedChannelOptions(64) { SingleReader = true, SingleWriter = true });
+    private readonly Dictionary<string, byte[]> _commands = new(StringComparer.Ordinal);
     private readonly Wire _wire;
-    private readonly HealthBook _health;
-    private readonly TimeSpan _patience;
     private CancellationTokenSource _timer = new();
-    private byte[] _asked = [];
+    private volatile Station _asking;
 
-    public ScpiDialogue(Wire wire, HealthBook health, TimeSpan patience)
+    public ScpiDialogue(Wire wire, Station asking)
     {
         _wire = wire;
-        _health = health;
-        _patience = patience;
+        _asking = asking;
     }
 
     /// <summary>Bytes of a line that has begun and not ended.</summary>
     public int UnfinishedBytes => _wire.UnfinishedBytes;
 
-    /// <summary>Sends a command that has no answer, or whose answers <see cref="NextAsync"/> fetches.</summary>
+    /// <summary>A line beyond the limit came since the last command.</summary>
+    public bool SawLineTooLong { get; private set; }
+
+    /// <summary>For whom the next questions are asked: its patience counts, and its book.</summary>
+    public void AskFor(Station station) => _asking = station;
+
+    /// <summary>Sends a command; answers, if it has any, are fetched by <see cref="NextAsync"/>.</summary>
     public ValueTask SendAsync(string command, CancellationToken cancellationToken)
     {
-        _asked = Encoding.ASCII.GetBytes(command + "\n");
-        return _wire.SendAsync(_asked, cancellationToken);
+        if (!_commands.TryGetValue(command, out var bytes))
+        {
+            bytes = _commands[command] = Encoding.Latin1.GetBytes(command + _asking.Options.Protocol.CommandEndText);
+        }
+
+        SawLineTooLong = false;
+        return _wire.SendAsync(bytes, cancellationToken);
     }
 
     /// <summary>Refuses what came unasked; returns how many lines that were.</summary>
@@ -51,16 +64,22 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
         {
             if (IsEcho(late.Text))
             {
-                _health.LinePassedOver();
+                late.PassOver();
                 continue;
             }
 
-            _health.LineRefused(GapReason.StaleAnswer);
+            late.Refuse(GapReason.StaleAnswer);
             count++;
         }
 
         return count;
     }
+
+    /// <summary>
+    /// Another line lies there already that says something else: two answers to one question, of which none can be believed.
+    /// The same line twice is a stutter, and refused with the next question.
+    /// </summary>
+    public bool IsContradicted(Answer answer) => _answers.Reader.TryPeek(out var other) && !IsEcho(other.Text) && !other.Text.SequenceEqual(answer.Text);
 
     /// <summary>The next line that is no echo of the command, or null after the patience is over; in real time, whatever clock the polls follow.</summary>
     /// <exception cref="TransportException">The wire is gone.</exception>
@@ -78,7 +97,7 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
                     return answer;
                 }
 
-                _health.LinePassedOver();
+                answer.PassOver();
             }
         }
         catch (OperationCanceledException) when (!cancellationToken.IsCancellationRequested)
@@ -100,25 +119,40 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
     /// <inheritdoc/>
     public void Dispose() => _timer.Dispose();
 
-    void ILineSink.OnLine(ReadOnlySpan<byte> line, long firstByteStamp, long lastByteStamp)
+    void ILineSink.OnLine(ReadOnlySpan<byte> line, long firstByteStamp, long lastByteStamp, bool stale)
     {
-        _health.LineReceived();
-        if (!_answers.Writer.TryWrite(new Answer(line.ToArray(), firstByteStamp, lastByteStamp)))
+        var health = _asking.Health;
+        health.LineReceived();
+        if (!_answers.Writer.TryWrite(new Answer(line.ToArray(), firstByteStamp, lastByteStamp, health)))
         {
-            _health.LineRefused(GapReason.StaleAnswer);
+            health.LineRefused(GapReason.StaleAnswer);
         }
     }
 
     void ILineSink.OnLineTooLong(long stamp)
     {
-        _health.LineReceived();
-        _health.LineRefused(GapReason.LineTooLong);
-        _health.Problem("the meter sends lines longer than 4096 bytes; they are thrown away. Wrong baud rate, or not a meter?");
+        var health = _asking.Health;
+        health.LineReceived();
+        health.LineRefused(GapReason.LineTooLong);
+        health.Problem(Wire.TooLong);
+        SawLineTooLong = true;
     }
 
     ValueTask ILineSink.RoomAsync(CancellationToken cancellationToken) => ValueTask.CompletedTask;
 
-    private bool IsEcho(ReadOnlySpan<byte> text) => _asked.Length > 1 && text.SequenceEqual(_asked.AsSpan(0, _asked.Length - 1));
+    // Any command of ours, not only the last: one without an answer leaves its echo to whoever reads next.
+    private bool IsEcho(ReadOnlySpan<byte> text)
+    {
+        foreach (var command in _commands.Values)
+        {
+            if (text.SequenceEqual(ScpiNumber.TrimBlanks(command)))
+            {
+                return true;
+            }
+        }
+
+        return false;
+    }
 
     private CancellationTokenSource StartTimer()
     {
@@ -128,7 +162,7 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
             _timer = new CancellationTokenSource();
         }
 
-        _timer.CancelAfter(_patience);
+        _timer.CancelAfter(TimeSpan.FromSeconds(_asking.Options.ReplyTimeoutSeconds));
         return _timer;
     }
 }

@@ -3,7 +3,7 @@ using Lampwarden.Acquisition.Transport;
 namespace Lampwarden.Acquisition.Protocol;
 
 /// <summary>
-/// Asks a SCPI meter at a fixed rate: one question outstanding, one event for every poll.
+/// Asks a SCPI meter at a fixed rate, for one station or several in turn: one question outstanding, one event for every poll.
 /// SCPI answers carry no number of their question. After anything unexpected the two sides are therefore taken to be out of step,
 /// and no number is believed until the meter has answered *IDN? (see <see cref="ResynchroniseAsync"/>).
 /// </summary>
@@ -11,30 +11,31 @@ internal sealed partial class ScpiMeter : IMeterProtocol
 {
     private const double StalledSeconds = 1;
     private const double StalledPeriods = 3;
-    private readonly MeterOptions _options;
-    private readonly EventOutlet _outlet;
-    private readonly TimeSpan _patience;
+    private readonly MeterLine _line;
+    private readonly TimeProvider _time;
     private bool _outOfStep;
     private int _failedSteps;
 
-    public ScpiMeter(MeterOptions options, EventOutlet outlet)
+    public ScpiMeter(MeterLine line, TimeProvider time)
     {
-        _options = options;
-        _outlet = outlet;
-        _patience = TimeSpan.FromSeconds(options.ReplyTimeoutSeconds);
+        _line = line;
+        _time = time;
     }
-
-    private HealthBook Health => _outlet.Health;
 
     /// <inheritdoc/>
     public async Task RunAsync(Wire wire, CancellationToken cancellationToken)
     {
+        if (_line.Stations is not [var first, ..])
+        {
+            return;
+        }
+
         using var over = CancellationTokenSource.CreateLinkedTokenSource(cancellationToken);
-        using var dialogue = new ScpiDialogue(wire, Health, _patience);
+        using var dialogue = new ScpiDialogue(wire, first);
         var pump = PumpAsync(wire, dialogue, over);
         try
         {
-            await PrepareAsync(dialogue, over.Token);
+            await PrepareAsync(dialogue, first, over.Token);
             await PollForEverAsync(dialogue, over.Token);
         }
         catch (OperationCanceledException) when (!cancellationToken.IsCancellationRequested)
@@ -43,9 +44,9 @@ internal sealed partial class ScpiMeter : IMeterProtocol
         }
         finally
         {
-            dialogue.RefuseUnasked();
             await over.CancelAsync();
             await pump.ConfigureAwait(ConfigureAwaitOptions.SuppressThrowing);
+            dialogue.RefuseUnasked();
         }
 
         await pump;
@@ -67,65 +68,96 @@ internal sealed partial class ScpiMeter : IMeterProtocol
 
     private async Task PollForEverAsync(ScpiDialogue dialogue, CancellationToken cancellationToken)
     {
-        var schedule = new PollSchedule(_outlet.Clock.Time, _options.ReadingsPerSecond);
-        while (true)
+        while (_line.Stations is { Length: > 0 } stations)
         {
-            var late = await schedule.WaitAsync(cancellationToken);
-            Health.Skipped(schedule.SkippedByWork);
-            if (late > Math.Max(StalledSeconds, StalledPeriods * schedule.PeriodSeconds))
+            var station = stations.MinBy(one => one.Schedule.SecondsToNext)!;
+            while (station.Schedule.SecondsToNext is var wait && wait > 0)
             {
-                _outlet.Gap(GapReason.Stalled, FormattableString.Invariant(
-                    $"this program was held up for {late:0.0} s and left out {Math.Floor(late / schedule.PeriodSeconds):0} polls; the computer is too busy or slept"));
+                // Timers count whole milliseconds and may come back a little early: ask again until the point has come. A long wait is
+                // cut in pieces, so that a hurry or a new station is seen soon.
+                await Task.Delay(TimeSpan.FromSeconds(Math.Clamp(wait, 0.001, 0.25)), _time, cancellationToken);
             }
 
-            await PollAsync(dialogue, cancellationToken);
-            await _outlet.FlushAsync(cancellationToken);
+            var late = station.Schedule.Begin();
+            if (late > Math.Max(StalledSeconds, StalledPeriods * station.Schedule.PeriodSeconds))
+            {
+                station.Outlet.Gap(GapReason.Stalled, FormattableString.Invariant(
+                    $"this program was held up for {late:0.0} s and left out {Math.Floor(late / station.Schedule.PeriodSeconds):0} polls; the computer is too busy or slept"));
+            }
+
+            dialogue.AskFor(station);
+            await PollAsync(dialogue, station, cancellationToken);
+            station.Health.Skipped(station.Schedule.End());
+            await station.Outlet.FlushAsync(cancellationToken);
         }
     }
 
-    private async Task PollAsync(ScpiDialogue dialogue, CancellationToken cancellationToken)
+    private async Task PollAsync(ScpiDialogue dialogue, Station station, CancellationToken cancellationToken)
     {
-        if (_outOfStep && !await ResynchroniseAsync(dialogue, cancellationToken))
+        if (_outOfStep)
         {
-            return; // its gap is given
+            if (!await ResynchroniseAsync(dialogue, station, cancellationToken))
+            {
+                return; // its gap is given
+            }
+        }
+        else if (await HasRestartedAsync(dialogue, station, cancellationToken))
+        {
+            station.Outlet.Gap(GapReason.MeterRestarted, "the meter reports that it was switched on since it was set up (*ESR? bit 7); it is being set up again");
+            return;
         }
 
+        var query = station.Options.Protocol.Query;
         dialogue.RefuseUnasked();
-        var asked = _outlet.Clock.Now;
-        await dialogue.SendAsync(_options.Protocol.Query, cancellationToken);
+        var asked = station.Outlet.Clock.Now;
+        await dialogue.SendAsync(query, cancellationToken);
         if (await dialogue.NextAsync(cancellationToken) is not { } answer)
         {
-            NoAnswer(dialogue, _options.Protocol.Query);
+            NoAnswer(dialogue, station, query);
             return;
         }
 
-        var value = ScpiNumber.Read(answer.Bytes);
+        if (dialogue.IsContradicted(answer))
+        {
+            _outOfStep = true;
+            answer.Refuse(GapReason.StaleAnswer);
+            station.Outlet.Gap(GapReason.StaleAnswer, $"asked {query}: more than one answer came, beginning with {Excerpt.Of(answer.Bytes)}");
+            return;
+        }
+
+        var value = station.Reader.Read(answer.Bytes);
         if (value.Kind == MeterEventKind.Gap)
         {
-            Health.LineRefused(value.Reason);
+            answer.Refuse(value.Reason);
             _outOfStep = value.Reason == GapReason.NotANumber; // it may be the answer to something else
-            _outlet.Gap(value.Reason, $"asked {_options.Protocol.Query}: {value.Detail}");
+            station.Outlet.Gap(value.Reason, $"asked {query}: {value.Detail}");
             return;
         }
 
-        Health.LineUsed();
-        _outlet.Value(value, answer.FirstByteStamp, _outlet.Clock.Seconds(asked, answer.LastByteStamp));
+        station.Health.LineUsed();
+        station.Outlet.Value(value, answer.FirstByteStamp, station.Outlet.Clock.Seconds(asked, answer.LastByteStamp));
+        station.Saw(value.Value);
     }
 
-    private void NoAnswer(ScpiDialogue dialogue, string question)
+    private void NoAnswer(ScpiDialogue dialogue, Station station, string question)
     {
         _outOfStep = true;
         var unfinished = dialogue.UnfinishedBytes;
         dialogue.DropUnfinished();
-        if (unfinished > 0)
+        var patience = station.Options.ReplyTimeoutSeconds;
+        if (dialogue.SawLineTooLong)
         {
-            _outlet.Gap(GapReason.NotANumber, FormattableString.Invariant(
-                $"asked {question}: {unfinished} bytes came and no line end within {_options.ReplyTimeoutSeconds} s; wrong baud rate, or the answer broke off"));
+            station.Outlet.Gap(GapReason.LineTooLong, $"asked {question}: {Wire.TooLong}");
+        }
+        else if (unfinished > 0)
+        {
+            station.Outlet.Gap(GapReason.NotANumber, FormattableString.Invariant(
+                $"asked {question}: {unfinished} bytes came and no line end within {patience} s; wrong baud rate, or the answer broke off"));
         }
         else
         {
-            _outlet.Gap(GapReason.NoAnswer, FormattableString.Invariant(
-                $"asked {question}: nothing came within {_options.ReplyTimeoutSeconds} s; meter off, cable loose, or another language"));
+            station.Outlet.Gap(GapReason.NoAnswer, FormattableString.Invariant(
+                $"asked {question}: nothing fitting came within {patience} s; meter off, cable loose, or another language"));
         }
     }
 }

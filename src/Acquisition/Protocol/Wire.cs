@@ -2,29 +2,21 @@ using Lampwarden.Acquisition.Transport;
 
 namespace Lampwarden.Acquisition.Protocol;
 
-/// <summary>Takes the lines of a wire as they arrive. Called by the one task that reads the wire.</summary>
-internal interface ILineSink
-{
-    /// <summary>A finished line; the span is valid during the call only.</summary>
-    void OnLine(ReadOnlySpan<byte> line, long firstByteStamp, long lastByteStamp);
-
-    /// <summary>A line beyond the limit was dropped.</summary>
-    void OnLineTooLong(long stamp);
-
-    /// <summary>Waits until the sink can take more; completed at once when it can.</summary>
-    ValueTask RoomAsync(CancellationToken cancellationToken);
-}
-
 /// <summary>An open connection with its line splitter: one task reads it all the time, so that nothing old lies in wait as an answer.</summary>
 internal sealed class Wire
 {
+    /// <summary>What to tell of lines no meter sends.</summary>
+    public const string TooLong = "lines longer than 4096 bytes come in and are thrown away. Wrong baud rate, or not a meter?";
+
+    private const double HeldUpSeconds = 1;
     private readonly Stream _stream;
     private readonly string _place;
     private readonly TimeProvider _time;
-    private readonly LineSplitter _lines = new();
+    private readonly LineSplitter _lines;
 
-    public Wire(MeterConnection connection, string place, TimeProvider time)
+    public Wire(MeterConnection connection, string place, TimeProvider time, string lineEnd)
     {
+        _lines = new LineSplitter(lineEnd: lineEnd);
         _stream = connection.Stream;
         _place = place;
         _time = time;
@@ -40,12 +32,15 @@ internal sealed class Wire
     /// <exception cref="TransportException">The wire is gone.</exception>
     public async Task PumpAsync(ILineSink sink, CancellationToken cancellationToken)
     {
+        var lastRead = _time.GetTimestamp();
+        var catchingUp = false;
         while (true)
         {
             int count;
+            var room = _lines.Free();
             try
             {
-                count = await _stream.ReadAsync(_lines.Free(), cancellationToken);
+                count = await _stream.ReadAsync(room, cancellationToken);
             }
             catch (Exception error) when (error is IOException or ObjectDisposedException or InvalidOperationException or UnauthorizedAccessException)
             {
@@ -64,7 +59,11 @@ internal sealed class Wire
                 _lines.DropPending();
             }
 
-            _lines.Received(count, _time.GetTimestamp());
+            // Several lines at once after a long time: they piled up while we were held up, and only the last of them is of now.
+            var now = _time.GetTimestamp();
+            catchingUp = _time.GetElapsedTime(lastRead, now).TotalSeconds > HeldUpSeconds || (catchingUp && count == room.Length);
+            lastRead = now;
+            _lines.Received(count, now);
             while (_lines.TryRead(out var line, out var first, out var last, out var tooLong))
             {
                 if (tooLong)
@@ -73,7 +72,7 @@ internal sealed class Wire
                 }
                 else
                 {
-                    sink.OnLine(line, first, last);
+                    sink.OnLine(line, first, last, catchingUp && _lines.HoldsLine);
                 }
             }
 

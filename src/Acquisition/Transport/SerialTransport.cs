@@ -32,7 +32,7 @@ public sealed class SerialTransport : IMeterTransport
     public Task<MeterConnection> OpenAsync(CancellationToken cancellationToken) =>
         Task.Run(Open, cancellationToken); // Opening blocks inside the driver, on some adapters for seconds.
 
-    private MeterConnection Open()
+    internal MeterConnection Open()
     {
         SerialPort? port = null;
         try

@@ -32,7 +32,7 @@ internal sealed class TestBench : IAsyncDisposable
 
     public static MeterOptions OptionsFor(IInstrumentPort port)
     {
-        var options = new MeterOptions { Name = "line", ReadingsPerSecond = 50, ReplyTimeoutSeconds = 0.3 };
+        var options = new MeterOptions { Name = "line", ReadingsPerSecond = 50, WindowSeconds = 0.02, ReplyTimeoutSeconds = 0.3, SwitchOnSeconds = 0 };
         if (port is TcpInstrumentPort tcp)
         {
             options.Transport.Kind = "tcp";
@@ -41,6 +41,7 @@ internal sealed class TestBench : IAsyncDisposable
         else
         {
             options.Transport.Port = port.Place;
+            options.Transport.BaudRate = 115200;
         }
 
         options.Protocol.SetUp = ["CONFigure:CURRent:AC 3"];

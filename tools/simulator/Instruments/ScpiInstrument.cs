@@ -11,7 +11,6 @@ internal sealed class ScpiInstrument
     private const int PowerOn = 128;
     private const int CommandError = 32;
     private const int ExecutionError = 16;
-    private const int QueryError = 4;
     private const int OperationComplete = 1;
     private readonly SimulatedMeterOptions _options;
     private readonly Func<MeasuredQuantity, double?, Task<double>> _measure;
@@ -116,9 +115,7 @@ internal sealed class ScpiInstrument
                 _status = 0;
                 return null;
             case "*RST":
-                _function = _options.Quantity;
-                Array.Clear(_ranges);
-                _last = null;
+                Reset();
                 return null;
             case "*OPC":
                 _status |= OperationComplete;
@@ -213,8 +210,20 @@ internal sealed class ScpiInstrument
         return null;
     }
 
-    /// <summary>A question came while an answer was due: the standard's word for it.</summary>
-    public void Interrupted() => Error(-410, "Query INTERRUPTED", QueryError);
+    /// <summary>Switched off and on: everything a client has set is lost.</summary>
+    public void PowerUp()
+    {
+        _errors.Clear();
+        _status = PowerOn;
+        Reset();
+    }
+
+    private void Reset()
+    {
+        _function = _options.Quantity;
+        Array.Clear(_ranges);
+        _last = null;
+    }
 
     private static string Number(double value) => double.IsPositiveInfinity(value)
         ? "+9.90000000E+37"

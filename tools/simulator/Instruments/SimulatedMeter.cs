@@ -3,8 +3,8 @@ using System.Text;
 namespace Lampwarden.Simulator.Instruments;
 
 /// <summary>
-/// A meter that is not there: answers SCPI on a port, measuring a simulated world on a clock that may run faster than the real one.
-/// Runs from construction to disposal; safe to unplug and plug in from any thread.
+/// A meter that is not there: answers SCPI or talks by itself on a port, measuring a simulated world on a clock that may run faster than the
+/// real one, and goes wrong as told. Runs from construction to disposal; trouble may be begun and ended from any thread.
 /// </summary>
 public sealed class SimulatedMeter : IAsyncDisposable
 {
@@ -15,8 +15,12 @@ public sealed class SimulatedMeter : IAsyncDisposable
     private readonly long _start;
     private readonly MeasuringFront _front;
     private readonly CancellationTokenSource _over = new();
+    private readonly Mouth _mouth;
+    private readonly ScpiInstrument _instrument;
     private readonly Task _running;
+    private Task _babble = Task.CompletedTask;
     private long _answered;
+    private double _stuckAt = double.NaN;
 
     /// <summary>Switches the meter on.</summary>
     /// <param name="options">The meter.</param>
@@ -31,20 +35,54 @@ public sealed class SimulatedMeter : IAsyncDisposable
         _time = time;
         _start = startStamp ?? time.GetTimestamp();
         _front = new MeasuringFront(options, world);
-        _running = Task.Run(ServeAsync);
+        _mouth = new Mouth(port, options.Terminator, options.Seed);
+        _instrument = new ScpiInstrument(options, MeasureAsync);
+        var talking = options.Dialect == "scpi" ? Task.CompletedTask : Task.Run(TalkAsync);
+        _running = Task.WhenAll([Task.Run(ListenAsync), talking, .. options.Troubles.Select(trouble => Task.Run(() => HappenAsync(trouble)))]);
     }
 
     /// <summary>Simulated seconds now.</summary>
     public double Seconds => _time.GetElapsedTime(_start).TotalSeconds;
 
-    /// <summary>Answers sent so far.</summary>
+    /// <summary>Answers given and lines sent so far.</summary>
     public long Answered => Interlocked.Read(ref _answered);
 
+    /// <summary>Begins a trouble; it lasts until <see cref="End"/>.</summary>
+    public void Begin(MeterTrouble trouble)
+    {
+        _mouth.Set(trouble, true);
+        switch (trouble)
+        {
+            case MeterTrouble.Unplugged:
+                _port.Unplug();
+                break;
+            case MeterTrouble.Babbling:
+                _babble = Task.Run(BabbleAsync);
+                break;
+            case MeterTrouble.Endless:
+                _babble = Task.Run(() => _mouth.SayWithoutEndAsync(_over.Token));
+                break;
+            case MeterTrouble.Restarted:
+                _instrument.PowerUp();
+                break;
+        }
+    }
+
+    /// <summary>Ends a trouble.</summary>
+    public void End(MeterTrouble trouble)
+    {
+        _mouth.Set(trouble, false);
+        if (trouble == MeterTrouble.Unplugged)
+        {
+            _port.PlugIn();
+        }
+    }
+
     /// <summary>Pulls the cable.</summary>
-    public void Unplug() => _port.Unplug();
+    public void Unplug() => Begin(MeterTrouble.Unplugged);
 
     /// <summary>Puts the cable back.</summary>
-    public void PlugIn() => _port.PlugIn();
+    public void PlugIn() => End(MeterTrouble.Unplugged);
 
     /// <summary>Switches the meter off; its port stays with the caller.</summary>
     /// <exception cref="Exception">What stopped the meter before, if anything did: a fault of the simulation.</exception>
@@ -54,6 +92,7 @@ public sealed class SimulatedMeter : IAsyncDisposable
         try
         {
             await _running;
+            await _babble;
         }
         catch (OperationCanceledException)
         {
@@ -61,11 +100,11 @@ public sealed class SimulatedMeter : IAsyncDisposable
         }
 
         _over.Dispose();
+        _mouth.Dispose();
     }
 
-    private async Task ServeAsync()
+    private async Task ListenAsync()
     {
-        var instrument = new ScpiInstrument(_options, MeasureAsync);
         var buffer = new byte[1024];
         var message = new StringBuilder();
         while (true)
@@ -87,27 +126,74 @@ public sealed class SimulatedMeter : IAsyncDisposable
                 {
                     var text = message.ToString();
                     message.Clear();
-                    await AnswerAsync(instrument, text);
+                    await AnswerAsync(text);
                 }
             }
         }
     }
 
-    private async Task AnswerAsync(ScpiInstrument instrument, string message)
+    private async Task AnswerAsync(string message)
     {
-        if (_options.Echo)
+        if (_options.Dialect != "scpi" || _mouth.Suffers(MeterTrouble.Restarted))
         {
-            await SendAsync(message);
+            return; // a free-running meter has no ears, and one that is starting has none yet
         }
 
-        if (await instrument.ExecuteAsync(message) is { } answer)
+        if (_options.Echo)
         {
-            await SendAsync(answer);
+            await _mouth.SayAsync(message, _over.Token);
+        }
+
+        if (await _instrument.ExecuteAsync(message) is { } answer)
+        {
+            await _mouth.SayAsync(answer, _over.Token);
             Interlocked.Increment(ref _answered);
         }
     }
 
-    private ValueTask SendAsync(string text) => _port.WriteAsync(Encoding.ASCII.GetBytes(text + _options.Terminator), _over.Token);
+    private async Task TalkAsync()
+    {
+        var period = 1 / _options.LinesPerSecond;
+        for (var next = Seconds; ; next += period)
+        {
+            if (next - Seconds is var wait && wait > 0)
+            {
+                await Task.Delay(TimeSpan.FromSeconds(wait), _time, _over.Token);
+            }
+            else
+            {
+                next = Seconds; // a display that was held up does not catch up
+                await Task.Yield();
+                _over.Token.ThrowIfCancellationRequested();
+            }
+
+            var count = _options.Quantity == MeasuredQuantity.LineCurrent ? _options.CurrentCountSize : _options.VoltageCountSize;
+            await _mouth.SayAsync(LineDialect.Write(_options.Dialect, _options.Quantity, Show(_options.Quantity, null), count), _over.Token);
+            Interlocked.Increment(ref _answered);
+        }
+    }
+
+    private async Task BabbleAsync()
+    {
+        while (_mouth.Suffers(MeterTrouble.Babbling))
+        {
+            await _mouth.SayAsync("+7.77700000E-01", _over.Token);
+            await Task.Delay(1, _over.Token);
+        }
+    }
+
+    private async Task HappenAsync(ScheduledTrouble trouble)
+    {
+        await Task.Delay(TimeSpan.FromSeconds(Math.Max(0, trouble.AtSeconds - Seconds)), _time, _over.Token);
+        Begin(trouble.Kind);
+        if (trouble.ForSeconds <= 0 && trouble.Kind is not (MeterTrouble.Endless or MeterTrouble.Restarted))
+        {
+            return;
+        }
+
+        await Task.Delay(TimeSpan.FromSeconds(trouble.ForSeconds), _time, _over.Token);
+        End(trouble.Kind);
+    }
 
     private async Task<double> MeasureAsync(MeasuredQuantity quantity, double? range)
     {
@@ -116,6 +202,13 @@ public sealed class SimulatedMeter : IAsyncDisposable
             await Task.Delay(TimeSpan.FromSeconds(_options.MeasuringSeconds), _time, _over.Token);
         }
 
-        return _front.Show(quantity, Seconds, range);
+        return Show(quantity, range);
+    }
+
+    private double Show(MeasuredQuantity quantity, double? range)
+    {
+        var shown = _front.Show(quantity, Seconds, range);
+        _stuckAt = !_mouth.Suffers(MeterTrouble.Stuck) ? double.NaN : double.IsNaN(_stuckAt) ? shown : _stuckAt;
+        return double.IsNaN(_stuckAt) ? shown : _stuckAt;
     }
 }

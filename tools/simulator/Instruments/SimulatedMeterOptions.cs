@@ -3,6 +3,12 @@ namespace Lampwarden.Simulator.Instruments;
 /// <summary>A simulated meter: its language, its pace and how far it is from the truth.</summary>
 public sealed class SimulatedMeterOptions
 {
+    /// <summary>scpi (waits for questions), or a free-running one: words, fields or columns (see <see cref="LineDialect"/>).</summary>
+    public string Dialect { get; set; } = "scpi";
+
+    /// <summary>Free-running dialects: lines a simulated second.</summary>
+    public double LinesPerSecond { get; set; } = 4;
+
     /// <summary>Answer to *IDN?: an instrument of our own invention.</summary>
     public string Identity { get; set; } = "Gantry Mill,Wicket 4,000117,1.2";
 
@@ -41,4 +47,7 @@ public sealed class SimulatedMeterOptions
 
     /// <summary>What ends its lines.</summary>
     public string Terminator { get; set; } = "\n";
+
+    /// <summary>What goes wrong with it, by itself, in simulated time. More can be begun by hand: <see cref="SimulatedMeter.Begin"/>.</summary>
+    public IList<ScheduledTrouble> Troubles { get; set; } = [];
 }
