@@ -53,5 +53,6 @@ public static class CommandLine
         new PredictCommand(),
         new WatchCommand(),
         new ReplayCommand(),
+        AlertsTestCommand.Group(),
     };
 }

@@ -39,6 +39,7 @@ public static class ConfigurationFile
         var options = new LampwardenOptions();
         new StrictBinder(faults).Bind(root, options, "");
         OptionsRules.Check(options, faults);
+        AlertsCheck.Run(options, faults);
         return faults.Count == 0 ? options : throw new ConfigurationException(path, faults);
     }
 }

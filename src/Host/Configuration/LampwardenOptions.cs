@@ -18,6 +18,9 @@ public sealed class LampwardenOptions
     /// <summary>Who is told.</summary>
     public AlertsOptions Alerts { get; set; } = new();
 
+    /// <summary>Who notices when the watcher itself dies, and who may look at its figures.</summary>
+    public UnattendedOptions Unattended { get; set; } = new();
+
     /// <summary>The local page.</summary>
     public WebOptions Web { get; set; } = new();
 }

@@ -35,21 +35,6 @@ public sealed class InfluxOptions
     public string Api { get; set; } = "v2";
 }
 
-/// <summary>Who is told of an alert.</summary>
-public sealed class AlertsOptions
-{
-    /// <summary>Routes beyond the log, tried each on its own.</summary>
-    public IList<RouteOptions> Routes { get; set; } = [];
-}
-
-/// <summary>One route. The log route is always there.</summary>
-public sealed class RouteOptions
-{
-    /// <summary>log: one line a change, with its severity.</summary>
-    [AllowedValues("log")]
-    public string Kind { get; set; } = "log";
-}
-
 /// <summary>The local page.</summary>
 public sealed class WebOptions
 {

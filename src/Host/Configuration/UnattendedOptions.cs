@@ -1,0 +1,26 @@
+using System.ComponentModel.DataAnnotations;
+
+namespace Lampwarden.Host.Configuration;
+
+/// <summary>What makes somebody notice when the watcher itself dies.</summary>
+public sealed class UnattendedOptions
+{
+    /// <summary>Address to GET while readings are being handled, for a service that tells when the pings stop; null for none.</summary>
+    [Url]
+    public string? PingUrl { get; set; }
+
+    /// <summary>Seconds between pings; 5 to 3600.</summary>
+    [Range(5.0, 3600.0)]
+    public double PingSeconds { get; set; } = 60;
+
+    /// <summary>Seconds without a reading handled after which a bench's loop counts as stuck; 5 to 3600.</summary>
+    [Range(5.0, 3600.0)]
+    public double StuckAfterSeconds { get; set; } = 30;
+
+    /// <summary>Whether a process with a stuck loop ends itself, for the service manager to start it again.</summary>
+    public bool EndWhenStuck { get; set; } = true;
+
+    /// <summary>Address of an OpenTelemetry collector that takes metrics over OTLP (http/protobuf); null for none.</summary>
+    [Url]
+    public string? OtlpUrl { get; set; }
+}
