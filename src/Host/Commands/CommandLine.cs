@@ -54,5 +54,11 @@ public static class CommandLine
         new WatchCommand(),
         new ReplayCommand(),
         AlertsTestCommand.Group(),
+        new RunsCommand(),
+        new ExportCommand(),
+        new ImportCommand(),
+        new CompareCommand(),
+        new ReferenceCommand(),
+        new ReportCommand(),
     };
 }

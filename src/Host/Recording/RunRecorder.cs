@@ -72,6 +72,29 @@ public sealed class RunRecorder
             && await action.Done.WaitAsync(cancellationToken) is null;
     }
 
+    /// <summary>Gaps, finding changes and alert changes of a run recorded elsewhere, as they were.</summary>
+    internal bool AppendStored(RunRecord record) => Add(0, batch =>
+    {
+        foreach (var gap in record.Gaps)
+        {
+            batch.Run(
+                "INSERT INTO gaps (run, from_ms, to_ms, reason, detail, polls) VALUES (?,?,?,?,?,?)",
+                _run.Key, StoreBatch.Milliseconds(gap.FromSeconds), StoreBatch.Milliseconds(gap.ToSeconds), gap.Reason, gap.Detail, gap.Polls);
+        }
+
+        foreach (var change in record.FindingChanges)
+        {
+            RunRows.Write(batch, _run.Key, change.Seconds, change.Change);
+        }
+
+        foreach (var change in record.AlertChanges)
+        {
+            RunRows.Write(batch, _run.Key, change);
+        }
+
+        batch.Run("UPDATE runs SET lost=? WHERE run=?", record.Info.Lost, _run.Key);
+    });
+
     private bool Add(double seconds, Action<StoreBatch> apply, bool important = true) =>
         _writer.Queue.TryAdd(new WriteItem(null, default, new StoreAction(apply) { Important = important })) || Lose(seconds);
 

@@ -41,6 +41,7 @@ public sealed record RunRecord(
     IReadOnlyList<AttachmentInfo> Attachments)
 {
     /// <summary>Every finding of the run in its latest form, by number.</summary>
+    [System.Text.Json.Serialization.JsonIgnore]
     public IReadOnlyList<Finding> Findings { get; } =
         [.. FindingChanges.GroupBy(change => change.Change.Finding.Number).OrderBy(group => group.Key).Select(group => group.Last().Change.Finding)];
 }

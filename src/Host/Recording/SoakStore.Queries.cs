@@ -58,21 +58,41 @@ public sealed partial class SoakStore
     /// <exception cref="StoreException">There is no such run, or a part of it is damaged (the message says which seconds are lost).</exception>
     public IEnumerable<LineReading> Readings(string run, double fromSeconds = 0, double toSeconds = double.PositiveInfinity)
     {
-        var key = KeyOf(run);
         var from = (long)Math.Ceiling(fromSeconds * 1000);
         var to = double.IsPositiveInfinity(toSeconds) ? long.MaxValue : (long)Math.Floor(toSeconds * 1000);
-        using var reader = new StoreReader(FilePath);
-        foreach (var (first, data) in reader.Chunks(key, from, to))
+        return Stretches(run, KeyOf(run), 0, from, to)
+            .SelectMany(stretch => stretch.Readings.Where(reading => reading.Milliseconds >= from && reading.Milliseconds <= to));
+    }
+
+    /// <summary>
+    /// A run's stream from an entry on, in stretches of its chunks. A few chunks are read at a time, so that a slow taker does
+    /// not hold a view of the file open; between two such reads the writer may pack short chunks into one that reaches back
+    /// before the entry wanted, whose first entries are then left out.
+    /// </summary>
+    internal IEnumerable<(long First, ArraySegment<LineReading> Readings)> Stretches(
+        string run, long key, long fromEntry, long fromMs = long.MinValue, long toMs = long.MaxValue)
+    {
+        const int atATime = 64;
+        while (true)
         {
-            foreach (var reading in Unpack(run, first, data))
+            var some = Read(reader => reader.Chunks(key, fromMs, toMs, fromEntry).Take(atATime).ToList());
+            foreach (var (first, data) in some)
             {
-                if (reading.Milliseconds >= from && reading.Milliseconds <= to)
-                {
-                    yield return reading;
-                }
+                var readings = Unpack(run, first, data);
+                var skip = (int)Math.Clamp(fromEntry - first, 0, readings.Length);
+                yield return (first + skip, new ArraySegment<LineReading>(readings, skip, readings.Length - skip));
+                fromEntry = first + readings.Length;
+            }
+
+            if (some.Count < atATime)
+            {
+                yield break;
             }
         }
     }
+
+    /// <summary>Whether the run has mains readings.</summary>
+    public bool HasVolts(string run) => Readings(run).Any(reading => !double.IsNaN(reading.MainsVolts));
 
     /// <summary>The watch's last kept state of an interrupted run; null where there is none.</summary>
     public (double Seconds, byte[] State)? WatchState(string run) => Read(reader => reader.List<(double, byte[])?>(
@@ -106,15 +126,15 @@ public sealed partial class SoakStore
         }
     }
 
-    private long KeyOf(string run) => Read(reader => reader.List<long?>(
+    internal long KeyOf(string run) => Read(reader => reader.List<long?>(
         "SELECT run FROM runs WHERE id=$id", row => row.GetInt64(0), ("$id", run)).FirstOrDefault())
         ?? throw new StoreException($"There is no run '{run}' in {FilePath}. 'lampwarden runs' lists those there are.");
 
-    private T Read<T>(Func<StoreReader, T> ask)
+    internal T Read<T>(Func<StoreReader, T> ask)
     {
         try
         {
-            using var reader = new StoreReader(FilePath);
+            using var reader = new StoreReader(_file);
             return ask(reader);
         }
         catch (SqliteException trouble)

@@ -33,7 +33,7 @@ public sealed partial class SoakStore
     private ActiveRun Reload(string id)
     {
         var run = new ActiveRun { Key = KeyOf(id), Id = id };
-        using var reader = new StoreReader(FilePath);
+        using var reader = new StoreReader(_file);
         run.Entries = reader.Count(run.Key, "SELECT coalesce(sum(count),0) FROM chunks WHERE run=$run");
         foreach (var chunk in reader.ShortChunks(run.Key))
         {

@@ -12,21 +12,22 @@ public sealed partial class SoakStore : IDisposable
     /// <summary>Name of the file within the folder.</summary>
     public const string FileName = "soaks.db";
 
-    private const long AlwaysCheckedBytes = 64 << 20;
-
     private readonly TimeProvider _time;
+    private readonly StoreFile _file;
     private readonly FolderLock? _lock;
-    private readonly SqliteConnection _connection;
-    private readonly StoreWriter _writer;
+    private readonly Lazy<StoreWriter> _writer;
 
-    private SoakStore(string path, TimeProvider time, FolderLock? folderLock, SqliteConnection connection, StoreOptions options)
+    private SoakStore(StoreFile file, TimeProvider time, FolderLock? folderLock, StoreOptions options)
     {
-        (FilePath, _time, _lock, _connection) = (path, time, folderLock, connection);
-        _writer = new StoreWriter(connection, path, options);
+        (_file, _time, _lock) = (file, time, folderLock);
+        // Who only looks needs no writer.
+        _writer = new Lazy<StoreWriter>(() => _file.Immutable
+            ? throw new StoreException($"{FilePath} lies on a medium that cannot be written. Copy the folder to one that can.")
+            : new StoreWriter(_file.Connect(SqliteOpenMode.ReadWrite), FilePath, options));
     }
 
     /// <summary>The store's file.</summary>
-    public string FilePath { get; }
+    public string FilePath => _file.Path;
 
     /// <summary>Runs that had been interrupted and were closed as incomplete by this opening; say so to the user.</summary>
     public IReadOnlyList<RunInfo> Interrupted { get; private set; } = [];
@@ -36,9 +37,15 @@ public sealed partial class SoakStore : IDisposable
     {
         get
         {
-            var (accepted, stored, waiting, refused) = _writer.Queue.Counts;
-            var ticks = _writer.LastCommitUtcTicks;
-            return new StoreHealth(accepted, stored, waiting, refused, _writer.Trouble, ticks == 0 ? null : new DateTimeOffset(ticks, TimeSpan.Zero));
+            if (!_writer.IsValueCreated)
+            {
+                return new StoreHealth(0, 0, 0, 0, null, null);
+            }
+
+            var (accepted, stored, waiting, refused) = _writer.Value.Queue.Counts;
+            var ticks = _writer.Value.LastCommitUtcTicks;
+            return new StoreHealth(
+                accepted, stored, waiting, refused, _writer.Value.Trouble, ticks == 0 ? null : new DateTimeOffset(ticks, TimeSpan.Zero));
         }
     }
 
@@ -50,20 +57,10 @@ public sealed partial class SoakStore : IDisposable
     {
         var path = Path.GetFullPath(Path.Combine(folder, FileName));
         var folderLock = mode == StoreMode.Recording ? FolderLock.Take(Path.GetFullPath(folder)) : null;
-        SqliteConnection? connection = null;
         try
         {
             Directory.CreateDirectory(Path.GetDirectoryName(path)!);
-            connection = Connect(path, SqliteOpenMode.ReadWriteCreate);
-            // auto_vacuum takes effect only before the first table: free pages go back to the disk when a run is closed.
-            StoreSchema.Execute(connection, "PRAGMA auto_vacuum=INCREMENTAL; PRAGMA journal_mode=WAL; PRAGMA synchronous=FULL");
-            StoreSchema.Migrate(connection, path);
-            if (mode == StoreMode.Recording)
-            {
-                Check(connection, path);
-            }
-
-            var store = new SoakStore(path, time, folderLock, connection, options ?? new StoreOptions());
+            var store = new SoakStore(StoreOpening.Prepare(path, mode), time, folderLock, options ?? new StoreOptions());
             if (mode == StoreMode.Recording)
             {
                 store.CloseInterrupted();
@@ -73,10 +70,10 @@ public sealed partial class SoakStore : IDisposable
         }
         catch (Exception trouble)
         {
-            connection?.Dispose();
             folderLock?.Dispose();
             throw trouble switch
             {
+                StoreException => trouble,
                 SqliteException sqlite => StoreException.From(sqlite, "Opening", path),
                 IOException or UnauthorizedAccessException => new StoreException($"Opening {path} failed: {trouble.Message}", trouble),
                 _ => trouble,
@@ -86,29 +83,39 @@ public sealed partial class SoakStore : IDisposable
 
     /// <summary>Begins a run; on return its row is on disk.</summary>
     /// <exception cref="StoreException">It cannot be stored; nothing has begun.</exception>
-    public async Task<RunRecorder> BeginRunAsync(RunStart start, CancellationToken cancellationToken = default)
+    public Task<RunRecorder> BeginRunAsync(RunStart start, CancellationToken cancellationToken = default) =>
+        BeginRunAsync(start, null, cancellationToken);
+
+    /// <summary>Begins a run that has an id already; it keeps it where it is free here.</summary>
+    internal async Task<RunRecorder> BeginRunAsync(RunStart start, string? origin, CancellationToken cancellationToken)
     {
         var run = new ActiveRun();
         var started = start.StartedUtc ?? _time.GetUtcNow();
-        await DoAsync(batch => RunBeginning.Write(batch, run, start, started), cancellationToken);
-        return new RunRecorder(_writer, run);
+        await DoAsync(batch => RunBeginning.Write(batch, run, start, started, origin), cancellationToken);
+        return new RunRecorder(_writer.Value, run);
     }
 
     /// <summary>Keeps a note with a run, whether it goes on or has ended.</summary>
     /// <exception cref="StoreException">There is no such run, or the note cannot be stored.</exception>
-    public Task AddNoteAsync(string run, string text, string? author = null, double? atSeconds = null, CancellationToken cancellationToken = default)
+    public Task AddNoteAsync(string run, string text, string? author = null, double? atSeconds = null, CancellationToken cancellationToken = default) =>
+        AddNoteAsync(run, new Note(_time.GetUtcNow(), author, text, atSeconds), cancellationToken);
+
+    internal Task AddNoteAsync(string run, Note note, CancellationToken cancellationToken)
     {
-        var (key, utc) = (KeyOf(run), _time.GetUtcNow().ToUnixTimeMilliseconds());
+        var key = KeyOf(run);
         return DoAsync(
             batch => batch.Run(
                 "INSERT INTO notes (run, utc_ms, at_ms, author, text) VALUES (?,?,?,?,?)",
-                key, utc, atSeconds is { } at ? StoreBatch.Milliseconds(at) : null, author, text),
+                key, note.Utc.ToUnixTimeMilliseconds(), note.AtSeconds is { } at ? StoreBatch.Milliseconds(at) : null, note.Author, note.Text),
             cancellationToken);
     }
 
     /// <summary>Keeps a file (a photograph, a measurement sheet) with a run.</summary>
     /// <exception cref="StoreException">There is no such run, the file is above 100 MB, or it cannot be stored.</exception>
-    public Task AttachAsync(string run, string name, string mediaType, byte[] data, CancellationToken cancellationToken = default)
+    public Task AttachAsync(string run, string name, string mediaType, byte[] data, CancellationToken cancellationToken = default) =>
+        AttachAsync(run, name, mediaType, data, _time.GetUtcNow(), cancellationToken);
+
+    internal Task AttachAsync(string run, string name, string mediaType, byte[] data, DateTimeOffset utc, CancellationToken cancellationToken)
     {
         const int largest = 100_000_000;
         if (data.Length > largest)
@@ -116,74 +123,37 @@ public sealed partial class SoakStore : IDisposable
             throw new StoreException($"{name} has {data.Length} bytes; at most {largest} can be kept with a run. Keep it elsewhere and note where.");
         }
 
-        var (key, utc) = (KeyOf(run), _time.GetUtcNow().ToUnixTimeMilliseconds());
+        var key = KeyOf(run);
         var sha256 = Convert.ToHexStringLower(System.Security.Cryptography.SHA256.HashData(data));
         return DoAsync(
             batch => batch.Run(
                 "INSERT INTO attachments (run, utc_ms, name, media_type, bytes, sha256, data) VALUES (?,?,?,?,?,?,?)",
-                key, utc, name, mediaType, (long)data.Length, sha256, data),
+                key, utc.ToUnixTimeMilliseconds(), name, mediaType, (long)data.Length, sha256, data),
             cancellationToken);
     }
 
     /// <summary>Stores what waits and closes the file. A run not ended by then counts as interrupted at the next opening.</summary>
     public void Dispose()
     {
-        _writer.Dispose();
-        if (_lock is not null && _writer.Trouble is null)
+        if (_writer.IsValueCreated)
         {
-            try
-            {
-                StoreSchema.Execute(_connection, "INSERT OR REPLACE INTO meta VALUES ('closed', 'clean')");
-            }
-            catch (SqliteException)
-            {
-                // The next opening checks the whole file: that is all this mark would have spared it.
-            }
+            _writer.Value.Dispose();
         }
 
-        _connection.Dispose();
+        if (_lock is not null && Health.Trouble is null)
+        {
+            StoreOpening.MarkClean(_file);
+        }
+
         _lock?.Dispose();
-    }
-
-    internal static SqliteConnection Connect(string path, SqliteOpenMode mode)
-    {
-        var connection = new SqliteConnection(new SqliteConnectionStringBuilder
-        {
-            DataSource = path,
-            Mode = mode,
-            Pooling = false,
-            DefaultTimeout = 5,
-        }.ToString());
-        connection.Open();
-        return connection;
-    }
-
-    // A large file that was closed properly is not read through at every start; every chunk carries a check sum of its own anyway.
-    private static void Check(SqliteConnection connection, string path)
-    {
-        using var command = connection.CreateCommand();
-        command.CommandText = "SELECT count(*) FROM meta WHERE key='closed' AND value='clean'";
-        var clean = (long)command.ExecuteScalar()! == 1;
-        if (!clean || new FileInfo(path).Length < AlwaysCheckedBytes)
-        {
-            command.CommandText = "PRAGMA quick_check(1)";
-            if (command.ExecuteScalar() as string is var found && found != "ok")
-            {
-                throw new StoreException(
-                    $"{path} is damaged ({found}). Nothing was changed. Keep a copy, read what is whole with 'lampwarden runs' and "
-                    + "'lampwarden export', and record into a new folder with --record.");
-            }
-        }
-
-        StoreSchema.Execute(connection, "DELETE FROM meta WHERE key='closed'");
     }
 
     private async Task DoAsync(Action<StoreBatch> apply, CancellationToken cancellationToken)
     {
         var action = new StoreAction(apply) { Hurry = true, GiveUpOnTrouble = true };
-        if (!_writer.Queue.TryAdd(new WriteItem(null, default, action)))
+        if (!_writer.Value.Queue.TryAdd(new WriteItem(null, default, action)))
         {
-            throw new StoreException($"Writing into {FilePath} failed: {_writer.Trouble ?? "the store is being closed"}");
+            throw new StoreException($"Writing into {FilePath} failed: {_writer.Value.Trouble ?? "the store is being closed"}");
         }
 
         if (await action.Done.WaitAsync(cancellationToken) is { } trouble)

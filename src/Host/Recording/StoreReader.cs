@@ -10,9 +10,9 @@ internal sealed class StoreReader : IDisposable
 
     private readonly SqliteTransaction _view;
 
-    public StoreReader(string path)
+    public StoreReader(StoreFile file)
     {
-        _connection = SoakStore.Connect(path, SqliteOpenMode.ReadOnly);
+        _connection = file.Connect(SqliteOpenMode.ReadOnly);
         // One view for all statements of a question: the writer may be packing short chunks into a full one meanwhile.
         _view = _connection.BeginTransaction(deferred: true);
     }
@@ -46,7 +46,7 @@ internal sealed class StoreReader : IDisposable
     public IEnumerable<(long First, byte[] Data)> Chunks(long run, long fromMs, long toMs, long fromEntry = 0)
     {
         using var command = Command(
-            "SELECT first, data FROM chunks WHERE run=$run AND first>=$first AND to_ms>=$from AND from_ms<=$to ORDER BY first",
+            "SELECT first, data FROM chunks WHERE run=$run AND first+count>$first AND to_ms>=$from AND from_ms<=$to ORDER BY first",
             ("$run", run), ("$first", fromEntry), ("$from", fromMs), ("$to", toMs));
         using var rows = command.ExecuteReader();
         while (rows.Read())

@@ -51,13 +51,40 @@ internal static class StoreSchema
             media_type TEXT NOT NULL, bytes INTEGER NOT NULL, sha256 TEXT NOT NULL, data BLOB NOT NULL);
         CREATE INDEX attachments_of_run ON attachments (run, attachment);
         """,
+        """
+        ALTER TABLE runs ADD COLUMN origin TEXT;
+        ALTER TABLE runs ADD COLUMN signed_by TEXT;
+        ALTER TABLE runs ADD COLUMN signed_ms INTEGER;
+        CREATE TABLE reference_units (model TEXT PRIMARY KEY, run INTEGER NOT NULL, utc_ms INTEGER NOT NULL);
+        CREATE TABLE forwarding (
+            target TEXT NOT NULL, run INTEGER NOT NULL, entries INTEGER NOT NULL DEFAULT 0, findings INTEGER NOT NULL DEFAULT 0,
+            alerts INTEGER NOT NULL DEFAULT 0, begun INTEGER NOT NULL DEFAULT 0, ended INTEGER NOT NULL DEFAULT 0, PRIMARY KEY (target, run));
+        CREATE TABLE parked_points (
+            point INTEGER PRIMARY KEY, target TEXT NOT NULL, run INTEGER NOT NULL, utc_ms INTEGER NOT NULL, reason TEXT NOT NULL, line TEXT NOT NULL);
+        """,
     ];
+
+    /// <summary>For a file that cannot be written, and so not be brought to this version.</summary>
+    /// <exception cref="StoreException">It is of another version.</exception>
+    public static void RefuseOtherVersions(SqliteConnection connection, string path)
+    {
+        if (Scalar(connection, "PRAGMA user_version") is var found && found != Version)
+        {
+            throw new StoreException(
+                $"{path} has schema version {found} and cannot be written, so it cannot be brought to version {Version}. Copy the folder to a medium that can be written.");
+        }
+    }
 
     /// <summary>Brings the file to this program's version, each step in a transaction of its own.</summary>
     /// <exception cref="StoreException">The file is of a later version, or of another program.</exception>
     public static void Migrate(SqliteConnection connection, string path)
     {
         var found = (int)Scalar(connection, "PRAGMA user_version");
+        if (found == Version && Scalar(connection, "PRAGMA application_id") == ApplicationId)
+        {
+            return;
+        }
+
         var application = (int)Scalar(connection, "PRAGMA application_id");
         var isNew = found == 0 && Scalar(connection, "SELECT count(*) FROM sqlite_master") == 0;
         if (!isNew && application != ApplicationId)

@@ -5,16 +5,16 @@ namespace Lampwarden.Host.Recording.Writing;
 /// <summary>A new run's row and id.</summary>
 internal static class RunBeginning
 {
-    public static void Write(StoreBatch batch, ActiveRun run, RunStart start, DateTimeOffset started)
+    public static void Write(StoreBatch batch, ActiveRun run, RunStart start, DateTimeOffset started, string? origin)
     {
-        var id = NextId(batch, started);
+        var id = origin is not null && batch.Ask("SELECT run FROM runs WHERE id=?", origin) is null ? origin : NextId(batch, started);
         batch.Run(
             """
-            INSERT INTO runs (id, bench, unit, unit_label, bank, mains, planned_hours, configuration, prediction, software, started_ms, resumed_from)
-            VALUES (?,?,?,?,?,?,?,?,?,?,?,?)
+            INSERT INTO runs (id, bench, unit, unit_label, bank, mains, planned_hours, configuration, prediction, software, started_ms, resumed_from, origin)
+            VALUES (?,?,?,?,?,?,?,?,?,?,?,?,?)
             """,
             id, start.Bench, start.Unit, start.UnitLabel, start.Bank, start.Mains, start.PlannedHours, start.ConfigurationJson,
-            start.PredictionJson, start.Software, started.ToUnixTimeMilliseconds(), start.ResumedFrom);
+            start.PredictionJson, start.Software, started.ToUnixTimeMilliseconds(), start.ResumedFrom, origin);
         (run.Key, run.Id) = ((long)batch.Ask("SELECT last_insert_rowid()")!, id);
     }
 

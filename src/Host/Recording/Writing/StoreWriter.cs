@@ -24,6 +24,7 @@ internal sealed class StoreWriter : IDisposable
     public StoreWriter(SqliteConnection connection, string path, StoreOptions options)
     {
         (_connection, _path, _options) = (connection, path, options);
+        StoreSchema.Execute(connection, "PRAGMA synchronous=FULL");
         _batch = new StoreBatch(connection, options.ChunkReadings);
         Queue = new WriteQueue(options.QueueCapacity, options.QueueReserve);
         _thread = new Thread(Loop) { IsBackground = true, Name = "soak store writer" };
@@ -45,6 +46,7 @@ internal sealed class StoreWriter : IDisposable
         Queue.Close();
         _thread.Join();
         _batch.Dispose();
+        _connection.Dispose();
     }
 
     private void Loop()
