@@ -1,6 +1,6 @@
 import { test } from "node:test";
 import assert from "node:assert/strict";
-import { lampsOf, layout } from "../../../../src/Host/Web/wwwroot/model/circuit.js";
+import { bankText, lampsOf, layout } from "../../../../src/Host/Web/wwwroot/model/circuit.js";
 
 const lamp = (index) => ({ kind: "lamp", index, name: `L${index}` });
 const series = (...parts) => ({ kind: "series", parts });
@@ -53,3 +53,13 @@ for (const upright of [false, true]) {
 test("layout_KeepsEveryPart", () => assert.equal(layout(trees.deep).parts.length, 6));
 
 test("lampsOf_CountsLampsOnly", () => assert.deepEqual(lampsOf(trees.deep).map(({ index }) => index), [0, 1, 2, 3, 4]));
+
+test("bankText_ALampOfAParallelPartOut_LeavesTheOthers", () => {
+  assert.equal(bankText(trees.mixed, new Set([0])), "L1 + L2");
+  assert.equal(bankText(trees.mixed), "(L0 || L1) + L2");
+});
+
+test("bankText_ALampOfASeriesOut_OpensIt", () => {
+  assert.equal(bankText(trees.series, new Set([1])), null);
+  assert.equal(bankText(trees.deep, new Set([2])), "L3 + (L4 || 8 ohm)");
+});

@@ -1,6 +1,6 @@
 import { test } from "node:test";
 import assert from "node:assert/strict";
-import { brightness, chromaticity, filamentColour, glowWord } from "../../../../src/Host/Web/wwwroot/model/glow.js";
+import { brightness, chromaticity, filamentColour, glowWord, seenColour } from "../../../../src/Host/Web/wwwroot/model/glow.js";
 
 const numbers = (colour) => colour.match(/\d+/g).map(Number);
 
@@ -41,4 +41,11 @@ test("glowWord_NamesEveryStage", () => {
     [[NaN, NaN], [400, 0], [1200, 0.00001], [1900, 0.01], [2400, 0.2], [2800, 1], [3000, 2]].map(([kelvin, glow]) => glowWord(kelvin, glow)),
     ["not known", "dark", "red glow", "dim", "lit", "full", "over rating"],
   );
+});
+
+test("seenColour_FullLight_IsNearlyWhite_DimLightKeepsItsColour", () => {
+  const full = numbers(seenColour(2750, 1));
+  assert.ok(full[2] > 200, `${full}`);
+  assert.deepEqual(numbers(seenColour(1500, 0.0005))[0], 255);
+  assert.ok(numbers(seenColour(1500, 0.0005))[2] < 60);
 });

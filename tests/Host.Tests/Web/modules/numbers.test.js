@@ -31,6 +31,10 @@ test("withInterval_HalfWidthThreeVolts_ShowsTwoDigitsOfIt", () => {
   assert.equal(plain(interval), "79.6 to 86.5 V");
 });
 
+test("withInterval_HalfWidthSixTenths_ShowsOneDigitOfIt", () => {
+  assert.equal(plain(withInterval(119.43, 118.8, 120.05, "V").text), "119.4 V");
+});
+
 test("withInterval_WideInterval_DoesNotPretend", () => {
   assert.equal(plain(withInterval(212.4, 120, 410, "Ω").text), "212 Ω");
 });
@@ -41,8 +45,8 @@ test("withInterval_OnlyTheUpperEnd_SaysBelow", () => {
 
 test("withInterval_Kiloohms_ShareOneUnit", () => {
   const { text, interval } = withInterval(1520, 1450, 1600, "Ω");
-  assert.equal(plain(text), "1.520 kΩ");
-  assert.equal(plain(interval), "1.450 to 1.600 kΩ");
+  assert.equal(plain(text), "1.52 kΩ");
+  assert.equal(plain(interval), "1.45 to 1.60 kΩ");
 });
 
 test("range_OfMilliamperes_NamesTheUnitOnce", () => assert.equal(plain(range(0.398, 0.431, "A")), "398 to 431 mA"));

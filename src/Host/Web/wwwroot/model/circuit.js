@@ -106,3 +106,23 @@ const named = ([x, y]) => ({ x, y });
 export function lampsOf(node) {
   return node.kind === "lamp" ? [node] : (node.parts ?? []).flatMap(lampsOf);
 }
+
+/**
+ * The bank as text without the lamps of `out` (their indices): a parallel part loses a branch, a series part loses the
+ * whole chain. Null where nothing is left that could carry current.
+ */
+export function bankText(node, out = new Set()) {
+  if (node.kind === "lamp" || node.kind === "resistor") {
+    return out.has(node.index) ? null : node.name;
+  }
+
+  const parts = node.parts.map((part) => ({ text: bankText(part, out), kind: part.kind }));
+  if (node.kind === "series") {
+    return parts.some(({ text }) => text === null) ? null : parts.map(({ text, kind }) => bracket(text, kind === "parallel")).join(" + ");
+  }
+
+  const left = parts.filter(({ text }) => text !== null);
+  return left.length === 0 ? null : left.length === 1 ? left[0].text : left.map(({ text, kind }) => bracket(text, kind === "series")).join(" || ");
+}
+
+const bracket = (text, compound) => (compound && /[+|]/.test(text) ? `(${text})` : text);

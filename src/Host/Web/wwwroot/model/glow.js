@@ -64,6 +64,16 @@ export function brightness(kelvin, glow) {
   return Math.max(light, 0.06);
 }
 
+/**
+ * The colour as the eye takes it: it is used to the lamp's own colour, and near rated light it sees hardly more than white,
+ * so a lit lamp is told from a dim one by its whiteness too.
+ */
+export function seenColour(kelvin, glow) {
+  const light = Math.min(brightness(kelvin, glow), 1);
+  const white = 0.78 * light ** 2;
+  return filamentColour(kelvin).replace(/\d+/g, (part) => Math.round(Number(part) + (255 - part) * white));
+}
+
 /** The same in a word, because colour alone tells nobody who does not see it. */
 export function glowWord(kelvin, glow) {
   if (!Number.isFinite(kelvin)) {

@@ -51,9 +51,11 @@ export function withUnit(value, unit, significant = 3) {
   return number === NOTHING ? NOTHING : number + NO_BREAK + name;
 }
 
-/** Decimals for a value known between low and high: half the width keeps two digits. */
+/** Decimals for a value known between low and high: half the width keeps two digits up to 354, one above (the rule of the Particle Data Group). */
 function decimalsOfInterval(low, high) {
-  return Math.max(0, decimalsFor((high - low) / 2, 2));
+  const half = (high - low) / 2;
+  const leading = half / 10 ** (Math.floor(Math.log10(half)) - 2);
+  return Math.max(0, decimalsFor(half, leading < 354.5 ? 2 : 1));
 }
 
 /**

@@ -35,7 +35,7 @@ function reset(state, data) {
     // A trace outlives a reset of the same run, or the drawing would blink; its owner fills the hole from the host.
     const known = before.get(document.bench);
     const sameRun = known && known.document.run === document.run;
-    state.benches.set(document.bench, { document, now: document.now ?? null, trace: sameRun ? known.trace : null });
+    state.benches.set(document.bench, { document, now: document.now ?? null, trace: sameRun ? known.trace : new Trace() });
   }
 
   return [...state.benches.keys()];
@@ -44,7 +44,7 @@ function reset(state, data) {
 function put(state, document) {
   const known = state.benches.get(document.bench);
   const sameRun = known && known.document.run === document.run;
-  const bench = { document, now: document.now ?? known?.now ?? null, trace: sameRun ? known.trace : null };
+  const bench = { document, now: document.now ?? known?.now ?? null, trace: sameRun ? known.trace : new Trace() };
   state.benches.set(document.bench, bench);
   return bench;
 }
@@ -65,7 +65,7 @@ function readings(state, data) {
     return [];
   }
 
-  bench.trace?.append(data.seconds, data.amps);
+  bench.trace.append(data.seconds, data.amps);
   return [data.bench];
 }
 
@@ -76,8 +76,9 @@ export function fill(state, name, answer) {
     return false;
   }
 
-  const later = bench.trace?.after(answer.lastSeconds ?? -Infinity) ?? [];
+  const later = bench.trace.after(answer.lastSeconds ?? -Infinity);
   bench.trace = Trace.from(answer);
+  bench.whole = true;
   for (const [seconds, amps] of later) {
     bench.trace.append([seconds], [amps]);
   }

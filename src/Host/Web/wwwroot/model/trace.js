@@ -97,3 +97,33 @@ export class Trace {
     }
   }
 }
+
+/**
+ * The range of the current axis: what came after the switch-on, and the predicted band; the inrush has its own place,
+ * and would flatten everything else.
+ */
+export function traceRange(trace, prediction) {
+  const settle = Math.max(5, 4 * (prediction?.inrush?.settleSeconds ?? 1));
+  const start = trace.seconds[0] ?? 0;
+  let [low, high] = [Infinity, -Infinity];
+  for (let index = 0; index < trace.seconds.length; index++) {
+    const calm = trace.seconds[index] - start >= settle || trace.last - start < 3 * settle;
+    if (calm && trace.low[index] !== null) {
+      low = Math.min(low, trace.low[index]);
+      high = Math.max(high, trace.high[index]);
+    }
+  }
+
+  const band = prediction?.band;
+  if (Number.isFinite(band?.lowAmps) && Number.isFinite(band?.highAmps)) {
+    low = Math.min(low, band.lowAmps);
+    high = Math.max(high, band.highAmps);
+  }
+
+  if (!Number.isFinite(low)) {
+    return [0, 0.1];
+  }
+
+  const room = Math.max((high - low) * 0.12, high * 0.01, 1e-4);
+  return [Math.max(0, low - room), high + room];
+}

@@ -1,0 +1,133 @@
+// Start of the page: follows the host, picks the view that the address names, and keeps it up to date.
+
+import { attribute, h, text } from "./pieces/dom.js";
+import { headline } from "./pieces/hero.js";
+import { onLocked, get } from "./live/api.js";
+import { Stream } from "./live/stream.js";
+import { empty, take } from "./model/state.js";
+import { standing } from "./model/order.js";
+import { tilesView } from "./views/tiles.js";
+import { benchView } from "./views/bench.js";
+import { startView } from "./views/start.js";
+import { chooseView } from "./views/choose.js";
+import { runsView } from "./views/runs.js";
+import { runView } from "./views/run.js";
+import { metersView } from "./views/meters.js";
+import { tokenView } from "./views/token.js";
+
+const state = empty();
+const main = document.getElementById("main");
+const link = document.getElementById("link");
+const stale = document.getElementById("stale");
+let view = null;
+let locked = false;
+let asked = false;
+
+const ROUTES = {
+  "": () => (state.benches.size === 1 ? benchView({ state, name: [...state.benches.keys()][0] }) : tilesView({ state })),
+  benches: () => tilesView({ state }),
+  bench: (name) => benchView({ state, name }),
+  start: (name) => startView({ state, name, go }),
+  choose: () => chooseView({ state }),
+  runs: () => runsView(),
+  run: (run, also) => runView({ run, also }),
+  meters: () => metersView(),
+};
+
+const stream = new Stream({
+  onEvent(type, data, id) {
+    const changed = take(state, type, data, id);
+    if (type === "reset") {
+      text(link, "live");
+      if (view === null) {
+        show();
+      } else {
+        view.reset?.();
+      }
+    }
+
+    if (changed.length > 0) {
+      soon();
+    }
+  },
+  onStale(seconds) {
+    stale.hidden = seconds === null;
+    text(link, seconds === null ? "live" : "not live");
+    if (seconds !== null) {
+      text(stale, `Nothing heard from the host for ${Math.round(seconds)} s. What is shown below is old: look at the bench itself.`);
+    }
+  },
+  onRefused() {
+    get("/api/benches").catch(() => {});
+  },
+});
+
+function go(address) {
+  location.hash = address;
+}
+
+function show() {
+  const [, route = "", ...words] = location.hash.split("/").map(decodeURIComponent);
+  view?.close();
+  view = locked ? tokenView({ entered }) : (ROUTES[route] ?? ROUTES[""])(...words);
+  main.replaceChildren(view.node);
+  for (const item of document.querySelectorAll(".top nav a")) {
+    const own = item.getAttribute("href").split("/")[1];
+    const here = own === route || (own === "" && ["bench", "benches"].includes(route)) || (own === "runs" && route === "run");
+    attribute(item, "aria-current", here ? "page" : null);
+  }
+
+  if (!locked) {
+    stream.follow(view.follows ?? null);
+  }
+
+  view.update();
+  title();
+}
+
+function entered() {
+  locked = false;
+  stream.reopen();
+  show();
+}
+
+onLocked(() => {
+  if (!locked) {
+    locked = true;
+    show();
+  }
+});
+
+function soon() {
+  if (!asked) {
+    asked = true;
+    requestAnimationFrame(() => {
+      asked = false;
+      view?.update();
+    });
+  }
+
+  title();
+}
+
+// The name of the tab says what stands worst, for a page that lies behind others.
+function title() {
+  const bench = view?.standsFor?.();
+  const worst = bench && ["critical", "warning", "blind"].includes(standing(bench)) ? `${headline(bench)}: ${bench.bench}, ` : "";
+  const wanted = `${worst}${view?.title ?? ""}, Lampwarden`;
+  if (document.title !== wanted) {
+    document.title = wanted;
+  }
+}
+
+addEventListener("hashchange", () => {
+  show();
+  main.focus({ preventScroll: true });
+  scrollTo(0, 0);
+});
+
+main.replaceChildren(h("p", {}, "Asking the host…"));
+stream.follow(null);
+if (["#/choose", "#/runs", "#/meters"].some((route) => location.hash.startsWith(route)) || location.hash.startsWith("#/run/")) {
+  show();
+}
