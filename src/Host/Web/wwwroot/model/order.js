@@ -1,7 +1,7 @@
 // Which bench needs a person first. A bench that nobody watches (no readings) comes before one that is merely odd.
 
 /** How a bench stands, worst first; each has its own word and its own shape, so that colour is never needed. */
-export const STANDINGS = ["critical", "warning", "blind", "notice", "settling", "watching", "waiting", "failed", "incomplete", "passed", "idle"];
+export const STANDINGS = ["critical", "warning", "blind", "notice", "failed", "incomplete", "settling", "watching", "waiting", "passed", "idle"];
 
 const WORDS = {
   critical: "Switch off",

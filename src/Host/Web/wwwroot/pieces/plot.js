@@ -95,12 +95,12 @@ export class Plot {
     }
 
     const colours = [css("--trace"), "#b4530a"];
-    const line = (index) => ({ stroke: colours[index], width: 1.6, points: { show: false }, spanGaps: false });
+    const line = (index) => ({ stroke: colours[index], width: 1.6, dash: index ? [9, 5] : undefined, points: { show: false }, spanGaps: false });
     this.#plot = new uPlot({
       width: this.width,
       height: this.height,
       pxAlign: 0,
-      padding: [8, 8, 0, 0],
+      padding: [8, 28, 0, 0],
       legend: { show: false },
       cursor: { drag: { x: false, y: false, setScale: false }, points: { show: false } },
       scales: {
