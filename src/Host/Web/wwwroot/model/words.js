@@ -19,6 +19,19 @@ const SIGNATURES = {
 /** A signature as it stands on the page. */
 export const signatureWord = (signature) => SIGNATURES[signature] ?? signature;
 
+const CAUSES = {
+  chattering: "Comes and goes",
+  "route-down": "Nobody can be told",
+  "cut-off": "Cut-off opened",
+  "cut-off-down": "Cut-off not reached",
+  "store-trouble": "Record in trouble",
+  "loop-stuck": "Bench not watched",
+  test: "Test",
+};
+
+/** What an alert is about: a signature, or something about the watcher itself. */
+export const causeWord = (cause) => SIGNATURES[cause] ?? CAUSES[cause] ?? cause;
+
 const STATES = {
   unacknowledged: "nobody has seen it",
   acknowledged: "acknowledged",

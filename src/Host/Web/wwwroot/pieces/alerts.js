@@ -3,13 +3,13 @@
 import { act, h, text } from "./dom.js";
 import { badge } from "./shapes.js";
 import { clock } from "../model/numbers.js";
-import { signatureWord, stateWord } from "../model/words.js";
+import { causeWord, stateWord } from "../model/words.js";
 import { benchPath, post } from "../live/api.js";
 
 const SHELVES = [[15, "15 min"], [60, "1 h"], [240, "4 h"]];
 const RANK = { critical: 0, warning: 1, notice: 2 };
 const needsNoMore = (alert) => alert.state === "normal";
-const canBeAcknowledged = (alert) => !["acknowledged", "normal", "latched-acknowledged"].includes(alert.state);
+const canBeAcknowledged = (alert) => !["acknowledged", "normal"].includes(alert.state);
 
 export class Alerts {
   #drawn = "";
@@ -45,7 +45,7 @@ export class Alerts {
 
   #alert(bench, alert) {
     const place = h("div", {});
-    const path = (rest) => benchPath(bench, `/alerts/${encodeURIComponent(alert.findingNumber)}/${rest}`);
+    const path = (rest) => benchPath(bench, `/alerts/${encodeURIComponent(alert.number)}/${rest}`);
     const acknowledge = h("button", { class: "main", onclick: () => act(acknowledge, place, () => post(path("acknowledge"))) }, "Acknowledge");
     const note = h("input", { name: "note", maxlength: "500", "aria-label": "Note", placeholder: "What did you find?" });
     const keep = h("button", { class: "small" }, "Keep note");
@@ -55,22 +55,24 @@ export class Alerts {
         event.preventDefault();
         note.blur();
         act(keep, place, async () => {
-          await post(benchPath(bench, "/notes"), { text: `${signatureWord(alert.signature)}: ${note.value}` });
+          await post(benchPath(bench, "/notes"), { text: `${causeWord(alert.cause)}: ${note.value}` });
           note.value = "";
           place.replaceChildren(h("p", { role: "status" }, "Kept with the run."));
         });
       },
     }, note, keep);
+    const reset = h("button", { onclick: () => act(reset, place, () => post(path("reset"))) }, "Reset");
+    const unshelve = h("button", { onclick: () => act(unshelve, place, () => post(path("unshelve"))) }, "Back from the shelf");
     const shelve = SHELVES.map(([minutes, words]) => {
       const button = h("button", { class: "small", onclick: () => act(button, place, () => post(path("shelve"), { minutes })) }, words);
       return button;
     });
     return h("li", { class: `alert a-${alert.severity}` },
-      h("p", { class: "alert-head" }, badge(alert.severity, signatureWord(alert.signature)), " ",
+      h("p", { class: "alert-head" }, badge(alert.severity, causeWord(alert.cause)), " ",
         h("span", { class: "quiet" }, `${alert.severity}, since ${clock(alert.raisedSeconds)}, ${stateWord(alert.state)}`)),
       h("p", {}, alert.text),
       h("div", { class: "row alert-deeds" },
-        canBeAcknowledged(alert) ? acknowledge : null,
+        alert.state === "shelved" ? unshelve : alert.state === "latched-acknowledged" ? reset : canBeAcknowledged(alert) ? acknowledge : null,
         form,
         needsNoMore(alert) || alert.state === "shelved" ? null : h("span", { class: "row shelve" }, h("span", { class: "quiet" }, "Shelve"), shelve)),
       place);

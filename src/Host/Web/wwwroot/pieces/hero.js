@@ -4,13 +4,13 @@ import { h, text, attribute } from "./dom.js";
 import { shape } from "./shapes.js";
 import { clock, isNumber, parts, range } from "../model/numbers.js";
 import { standing, standingWord, worstAlert } from "../model/order.js";
-import { signatureWord } from "../model/words.js";
+import { causeWord } from "../model/words.js";
 
 /** The large word: a fault by its name, else how the bench stands. */
 export function headline(document) {
   const key = standing(document);
   const worst = worstAlert(document);
-  return worst && ["critical", "warning", "notice"].includes(key) ? signatureWord(worst.signature) : standingWord(key);
+  return worst && ["critical", "warning", "notice"].includes(key) ? causeWord(worst.cause) : standingWord(key);
 }
 
 const DEEDS = {
