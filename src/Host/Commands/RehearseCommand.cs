@@ -1,9 +1,12 @@
 using System.CommandLine;
 using System.Globalization;
 using Lampwarden.Acquisition;
+using Lampwarden.Analysis.Lamps;
 using Lampwarden.Analysis.Watching;
 using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Soaking;
+using Lampwarden.Host.Web;
+using Lampwarden.Host.Web.Access;
 using Lampwarden.Simulator;
 using Lampwarden.Simulator.Benches;
 using Lampwarden.Simulator.Instruments;
@@ -66,7 +69,9 @@ internal sealed class RehearseCommand : CliCommand
 
         var narrator = new RehearsalNarrator(prose, plan);
         var documents = await SoakHost.RunAsync(
-            [plan], parsed.GetValue(_record) ?? new RecordingOptions().Folder, time, [narrator], logToConsole: false, started: time.Begin, cancellation);
+            [plan], parsed.GetValue(_record) ?? new RecordingOptions().Folder, time, [narrator], logToConsole: false, started: time.Begin,
+            parsed.GetValue(_noPage) ? null : new PageOrder(PageAddress.Of(new WebOptions(), "rehearse"), LampInventory.Empty, StaysOpen: false, MayFail: true, prose),
+            cancellation);
         cancellation.ThrowIfCancellationRequested();
         var document = documents.Count == 1 ? documents[0] : null;
         var missing = document is null ? ["a run: no current flowed"] : Missing(scenario, document, narrator, plan);

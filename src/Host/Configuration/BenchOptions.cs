@@ -22,11 +22,35 @@ public sealed class BenchOptions
     [Required]
     public string Unit { get; set; } = "";
 
+    /// <summary>What the technician calls the unit itself: a job or a serial number; kept with the run.</summary>
+    public string? UnitLabel { get; set; }
+
     /// <summary>The meters; at least one measures lineCurrent, at most one each quantity.</summary>
     public IList<MeterOptions> Meters { get; set; } = [];
 
     /// <summary>How long, and what is good enough.</summary>
     public SoakOptions Soak { get; set; } = new();
+
+    /// <summary>The same bench with another bank, unit or plan; null leaves a thing as it is, except the label, which belongs to the unit.</summary>
+    internal BenchOptions With(
+        string bank, string? unit = null, double? plannedHours = null, string? unitLabel = null, double? switchOnWaitSeconds = null) => new()
+    {
+        Name = Name,
+        Mains = Mains,
+        Bank = bank,
+        Unit = unit ?? Unit,
+        UnitLabel = unitLabel,
+        Meters = Meters,
+        Soak = new SoakOptions
+        {
+            PlannedHours = plannedHours ?? Soak.PlannedHours,
+            StartFrom = Soak.StartFrom,
+            // A current the user expects of the configured unit says nothing of another.
+            ExpectedAmps = (unit ?? Unit) == Unit && bank == Bank ? Soak.ExpectedAmps : null,
+            SwitchOnWaitSeconds = switchOnWaitSeconds ?? Soak.SwitchOnWaitSeconds,
+            Acceptance = Soak.Acceptance,
+        },
+    };
 }
 
 /// <summary>One soak's plan.</summary>
@@ -35,6 +59,10 @@ public sealed class SoakOptions
     /// <summary>Hours from switch-on to the verdict; 0.001 to 1000.</summary>
     [Range(0.001, 1000.0)]
     public double PlannedHours { get; set; } = 12;
+
+    /// <summary>switchOn: the service waits for current and begins by itself; page: it waits until somebody starts a soak on the page.</summary>
+    [AllowedValues("switchOn", "page")]
+    public string StartFrom { get; set; } = "switchOn";
 
     /// <summary>Line current in amperes the user expects once settled; null to rely on the prediction alone.</summary>
     [Range(0.0001, 100.0)]

@@ -1,20 +1,19 @@
-using Lampwarden.Host.Recording;
-
 namespace Lampwarden.Host.Soaking;
 
-/// <summary>Hosts the soak of one bench. A fault in its loop is never logged and left: it ends the host with a failing exit code.</summary>
-internal sealed class BenchSoakService(BenchPlan plan, SoakStore store, SoakSurroundings around, SoakResults results) : BackgroundService
+/// <summary>Hosts the soaks of one bench. A fault in its loop is never logged and left: it ends the host with a failing exit code.</summary>
+internal sealed class BenchSoakService(BenchDesk desk, ILogger logger, SoakResults results) : BackgroundService
 {
     /// <inheritdoc/>
     protected override async Task ExecuteAsync(CancellationToken stoppingToken)
     {
         try
         {
-            results.Add(await new Soak(plan, store, around).RunAsync(stoppingToken));
+            await desk.RunAsync(results.Add, stoppingToken);
+            results.Done();
         }
         catch (Exception fault) when (fault is not OutOfMemoryException)
         {
-            Log.SoakFailed(around.Logger, fault, plan.Name);
+            Log.SoakFailed(logger, fault, desk.Name);
             results.Fail(fault);
         }
     }
@@ -42,16 +41,20 @@ internal sealed class SoakResults(int benches, Action allDone)
         }
     }
 
-    /// <summary>A soak ended; null where it never began.</summary>
-    public void Add(SoakDocument? document)
+    /// <summary>A run was closed.</summary>
+    public void Add(SoakDocument document)
     {
         lock (_gate)
         {
-            if (document is not null)
-            {
-                _documents.Add(document);
-            }
+            _documents.Add(document);
+        }
+    }
 
+    /// <summary>A bench will soak no more.</summary>
+    public void Done()
+    {
+        lock (_gate)
+        {
             Count();
         }
     }

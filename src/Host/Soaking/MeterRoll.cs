@@ -31,10 +31,14 @@ internal sealed class MeterRoll(BenchPlan plan, SoakSurroundings around)
 
     private readonly Dictionary<string, double> _goneSinceSeconds = [];
     private readonly HashSet<string> _found = [];
-    private readonly Dictionary<string, MeterSession> _sessions = [];
+    private readonly System.Collections.Concurrent.ConcurrentDictionary<string, MeterSession> _sessions = new();
     private double _mainsVolts = double.NaN;
     private double _mainsAtSeconds = double.NegativeInfinity;
     private int _mainsDecimals = -1;
+
+    /// <summary>How the meters are doing, in the order of the configuration; none before they are opened. Safe from any thread.</summary>
+    public IReadOnlyList<(MeterOptions Meter, MeterHealth Health)> Health =>
+        [.. plan.Options.Meters.Where(meter => _sessions.ContainsKey(meter.Name)).Select(meter => (meter, _sessions[meter.Name].Health))];
 
     /// <summary>Sends every event of every meter to the loop until told to stop; opens and closes the sessions.</summary>
     public async Task PumpAsync(ChannelWriter<SoakInput> inputs, CancellationToken stop)

@@ -23,16 +23,22 @@ public sealed class Soak
     private readonly Channel<SoakInput> _inputs = Channel.CreateBounded<SoakInput>(
         new BoundedChannelOptions(4096) { SingleReader = true, FullMode = BoundedChannelFullMode.Wait });
 
+    private readonly BringUp? _bringUp;
+
     private RunRecorder? _recorder;
     private Action<AlertChange>? _tell;
     private double _originSeconds;
     private double _firstPollSeconds = double.NaN;
 
     /// <summary>Prepares a soak; nothing is opened yet.</summary>
-    public Soak(BenchPlan plan, SoakStore store, SoakSurroundings around)
+    /// <param name="plan">Bank, unit, meters and hours.</param>
+    /// <param name="store">Takes the run.</param>
+    /// <param name="around">Clock, log, routes, listeners.</param>
+    /// <param name="bringUp">Where the bank is switched in lamp by lamp: the steps; the last is the plan's own bank.</param>
+    public Soak(BenchPlan plan, SoakStore store, SoakSurroundings around, BringUp? bringUp = null)
     {
-        (_plan, _store, _around) = (plan, store, around);
-        _ledger = new SoakLedger(plan.WatchSettings);
+        (_plan, _store, _around, _bringUp) = (plan, store, around, bringUp);
+        _ledger = new SoakLedger(bringUp is null ? plan.WatchSettings : plan.WatchSettings with { Expectation = bringUp.Plan.WatchSettings.Expectation });
         _alerts = new AlertBook(plan.Name);
         _meters = new MeterRoll(plan, around);
     }
@@ -64,19 +70,63 @@ public sealed class Soak
         {
             await ending.CancelAsync();
             await pumps;
+            _inputs.Writer.TryComplete();
+        }
+
+        // Whoever asked for something too late is answered all the same.
+        while (_inputs.Reader.TryRead(out var late))
+        {
+            late.Do?.Invoke(this);
         }
 
         await teller.DisposeAsync();
         return _recorder is null ? null : await CloseAsync();
     }
 
+    /// <summary>The run's id; null before it began. Safe from any thread.</summary>
+    public string? Run => _recorder?.Run;
+
+    /// <summary>How the meters are doing. Safe from any thread.</summary>
+    public IReadOnlyList<(MeterOptions Meter, MeterHealth Health)> Meters => _meters.Health;
+
+    /// <summary>Somebody does something about an alert. Safe from any thread; carried out by the soak's loop.</summary>
+    /// <param name="decision">Given the book and the seconds of the run.</param>
+    /// <returns>The change; null where there was nothing to change, or the soak is over.</returns>
+    public Task<AlertChange?> DecideAsync(Func<AlertBook, double, AlertChange?> decision) => AskAsync(soak =>
+    {
+        var change = decision(soak._alerts, soak._ledger.LastSeconds);
+        soak.Publish(change);
+        return change;
+    });
+
     /// <summary>Somebody has seen an alert. Safe from any thread; carried out by the soak's loop.</summary>
-    public void Acknowledge(int alertNumber, string? by = null) => _inputs.Writer.TryWrite(new SoakInput(null, default, soak =>
-        soak.Publish(soak._alerts.Acknowledge(alertNumber, soak._ledger.LastSeconds, by))));
+    public Task<AlertChange?> AcknowledgeAsync(int alertNumber, string? by = null) =>
+        DecideAsync((book, seconds) => book.Acknowledge(alertNumber, seconds, by));
 
     /// <summary>Somebody changed something on the bench. Safe from any thread; carried out by the soak's loop.</summary>
-    public void Announce(Announcement what) => _inputs.Writer.TryWrite(new SoakInput(null, default, soak =>
-        soak.Publish(soak._ledger.Watch.Announce(soak._ledger.LastSeconds, what))));
+    /// <returns>False where no run is under way.</returns>
+    public Task<bool> AnnounceAsync(Announcement what) => AskAsync(soak =>
+    {
+        if (soak._recorder is null)
+        {
+            return false;
+        }
+
+        soak.Publish(soak._ledger.Watch.Announce(soak._ledger.LastSeconds, what));
+        return true;
+    });
+
+    /// <summary>The next lamp of the bring-up is in, whatever the current says; or the bring-up is left as it is.</summary>
+    /// <returns>False where there is no such step.</returns>
+    public Task<bool> AdvanceBringUpAsync(bool leave) => AskAsync(soak =>
+        soak._recorder is not null && soak._bringUp is { } bringUp && soak.Follow(leave ? bringUp.Leave() : bringUp.Confirm(soak._ledger.LastSeconds)));
+
+    private async Task<T?> AskAsync<T>(Func<Soak, T> work)
+    {
+        var answer = new TaskCompletionSource<T?>(TaskCreationOptions.RunContinuationsAsynchronously);
+        var asked = _inputs.Writer.TryWrite(new SoakInput(null, default, soak => answer.TrySetResult(work(soak))));
+        return asked ? await answer.Task : default;
+    }
 
     /// <returns>False when the planned time is over.</returns>
     private async ValueTask<bool> TakeAsync(SoakInput input, CancellationToken stop)
@@ -126,10 +176,16 @@ public sealed class Soak
             PredictionJson = JsonSerializer.Serialize(_plan.Prediction, Json.Compact),
             Software = Product.NameAndVersion,
             StartedUtc = look.Utc,
+            UnitLabel = _plan.Options.UnitLabel,
         }, stop);
         _recorder = recorder;
         Log.SoakStarted(_around.Logger, _plan.Name, recorder.Run, _plan.Unit.Text, _plan.Bank.Text, _plan.Mains.ToString());
-        Tell(new RunBegan(_plan.Name, recorder.Run, _plan, look.Utc));
+        Tell(new RunBegan(_plan.Name, recorder.Run, _bringUp?.Plan ?? _plan, look.Utc));
+        if (_bringUp is not null)
+        {
+            Tell(new BringUpMoved(_plan.Name, _bringUp.Status));
+        }
+
         return true;
     }
 
@@ -144,12 +200,54 @@ public sealed class Soak
             _recorder!.Append(new LineReading(observation.Seconds, observation.LineAmps, look.AmpsDecimals, observation.MainsVolts, look.VoltsDecimals));
         }
 
+        if (_bringUp is not null)
+        {
+            Follow(_bringUp.Take(observation));
+        }
+
         var changes = _ledger.Take(observation, look.Reason);
-        Tell(new Observed(_plan.Name, observation, _ledger.Watch.Phase));
+        Tell(new Observed(_plan.Name, observation, _ledger.Watch.Phase, () => _ledger.Watch.Sentence));
         Publish(changes);
         foreach (var change in _alerts.Tick(observation.Seconds))
         {
             Publish(change);
+        }
+    }
+
+    // A lamp that was switched in is announced to the watch before the reading that shows it is weighed, so that the watch
+    // does not take a step that was meant for a fault.
+    private bool Follow(BringUpMove? move)
+    {
+        if (move is null)
+        {
+            return false;
+        }
+
+        if (move.Announcement is not null)
+        {
+            Publish(_ledger.Watch.Announce(_ledger.LastSeconds, move.Announcement));
+            Tell(new PlanChanged(_plan.Name, _bringUp!.Plan));
+        }
+
+        if (move.Note is not null)
+        {
+            _ = NoteAsync(move.Note, _ledger.LastSeconds);
+        }
+
+        Tell(new BringUpMoved(_plan.Name, _bringUp!.Status));
+        return true;
+    }
+
+    private async Task NoteAsync(string text, double seconds)
+    {
+        try
+        {
+            await _store.AddNoteAsync(_recorder!.Run, text, atSeconds: seconds);
+        }
+        catch (StoreException error)
+        {
+            // The run goes on; the readings show what the note would have said.
+            Log.NoteNotStored(_around.Logger, error, _plan.Name);
         }
     }
 

@@ -1,5 +1,8 @@
+using Lampwarden.Analysis.Lamps;
 using Lampwarden.Host.Alerting;
 using Lampwarden.Host.Recording;
+using Lampwarden.Host.Web;
+using Lampwarden.Host.Web.Live;
 using Serilog;
 using Serilog.Events;
 
@@ -15,6 +18,7 @@ public static class SoakHost
     /// <param name="listeners">Who looks on.</param>
     /// <param name="logToConsole">Whether the log also goes to standard error.</param>
     /// <param name="started">Called once every soak is on its way; null for nothing.</param>
+    /// <param name="page">Serves the page; null for none.</param>
     /// <param name="stop">Ends every soak; the runs are still closed and stored.</param>
     /// <returns>What came of each run that began.</returns>
     /// <exception cref="StoreException">The store cannot be opened or written.</exception>
@@ -25,9 +29,11 @@ public static class SoakHost
         IReadOnlyList<ISoakListener> listeners,
         bool logToConsole,
         Action? started,
+        PageOrder? page,
         CancellationToken stop)
     {
         using var store = SoakStore.Open(recordFolder, time);
+        await using var board = page is null ? null : new LiveBoard(plans);
         var builder = Microsoft.Extensions.Hosting.Host.CreateEmptyApplicationBuilder(new HostApplicationBuilderSettings { ContentRootPath = AppContext.BaseDirectory });
         builder.Services.AddSerilog(MakeLog(recordFolder, logToConsole), dispose: true);
         builder.Services.Configure<HostOptions>(options => options.ShutdownTimeout = TimeSpan.FromSeconds(15));
@@ -36,15 +42,22 @@ public static class SoakHost
         builder.Services.AddSingleton(services =>
         {
             var logger = services.GetRequiredService<ILoggerFactory>().CreateLogger("Lampwarden");
-            return new SoakSurroundings(time, logger, [new LogRoute(logger)], listeners);
+            return new SoakSurroundings(time, logger, [new LogRoute(logger)], board is null ? listeners : [.. listeners, board]);
         });
-        foreach (var plan in plans)
+        builder.Services.AddSingleton(services => plans.Select(plan => new BenchDesk(
+            plan, page?.Inventory ?? LampInventory.Empty, store, services.GetRequiredService<SoakSurroundings>(), page?.StaysOpen ?? false)).ToList());
+        for (var index = 0; index < plans.Count; index++)
         {
+            var place = index;
             builder.Services.AddSingleton<IHostedService>(services => new BenchSoakService(
-                plan, store, services.GetRequiredService<SoakSurroundings>(), services.GetRequiredService<SoakResults>()));
+                services.GetRequiredService<List<BenchDesk>>()[place],
+                services.GetRequiredService<SoakSurroundings>().Logger,
+                services.GetRequiredService<SoakResults>()));
         }
 
         using var host = builder.Build();
+        await using var served = page is null ? null : await page.OpenAsync(
+            new PageParts(board!, host.Services.GetRequiredService<List<BenchDesk>>(), store, host.Services.GetRequiredService<ILoggerFactory>()));
         await host.StartAsync(CancellationToken.None);
         started?.Invoke();
         var results = host.Services.GetRequiredService<SoakResults>();

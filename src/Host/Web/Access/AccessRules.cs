@@ -1,5 +1,6 @@
 using System.Net;
 using Lampwarden.Host.Web.Api;
+using Microsoft.AspNetCore.Http.HttpResults;
 
 namespace Lampwarden.Host.Web.Access;
 
@@ -61,7 +62,7 @@ internal sealed class AccessRules(PageAddress address, WrongTokens wrong, TimePr
 
     // Without a token the page trusts this machine alone. A name that is not this machine's means that a foreign site points
     // its own name here (DNS rebinding), and a forwarding header that a proxy lets others in.
-    private IResult? Called(HttpContext context)
+    private ProblemHttpResult? Called(HttpContext context)
     {
         if (TokenRequired)
         {
@@ -80,7 +81,7 @@ internal sealed class AccessRules(PageAddress address, WrongTokens wrong, TimePr
     }
 
     // A page of another site may make a browser send requests here; the browser says so, and scripts cannot unsay it.
-    private static IResult? Origin(HttpContext context)
+    private static ProblemHttpResult? Origin(HttpContext context)
     {
         var request = context.Request;
         var site = request.Headers["Sec-Fetch-Site"].ToString();
@@ -100,11 +101,11 @@ internal sealed class AccessRules(PageAddress address, WrongTokens wrong, TimePr
         Uri.TryCreate(origin, UriKind.Absolute, out var from)
         && HostString.FromUriComponent(from.Authority).Equals(request.Host);
 
-    private static IResult CrossSite() =>
+    private static ProblemHttpResult CrossSite() =>
         Problems.Of(StatusCodes.Status403Forbidden, "Another site asked", "Only the page itself may ask this of the host.");
 
     // Forms of other sites can send text/plain and form data without the browser asking first, but not JSON.
-    private static IResult? Kind(HttpContext context)
+    private static ProblemHttpResult? Kind(HttpContext context)
     {
         var request = context.Request;
         var writes = HttpMethods.IsPost(request.Method) || HttpMethods.IsPut(request.Method) || HttpMethods.IsPatch(request.Method);
@@ -114,7 +115,7 @@ internal sealed class AccessRules(PageAddress address, WrongTokens wrong, TimePr
     }
 
     // The page's own files hold no secrets; without them nobody could be told how to make a token.
-    private IResult? Token(HttpContext context)
+    private ProblemHttpResult? Token(HttpContext context)
     {
         var request = context.Request;
         if (address.Token is null || !request.Path.StartsWithSegments("/api") || request.Path.Equals("/api/session", StringComparison.OrdinalIgnoreCase))
@@ -149,7 +150,7 @@ internal sealed class AccessRules(PageAddress address, WrongTokens wrong, TimePr
         return Problems.Of(StatusCodes.Status401Unauthorized, "A token is required", "Send Authorization: Bearer with the token, or enter it on the page.");
     }
 
-    private IResult? Waiting(HttpContext context, IPAddress from)
+    private ProblemHttpResult? Waiting(HttpContext context, IPAddress from)
     {
         var wait = wrong.WaitFor(from);
         if (wait <= TimeSpan.Zero)

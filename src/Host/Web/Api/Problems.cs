@@ -29,6 +29,8 @@ internal static class Problems
             FormatException or ArgumentException => Bad(error.Message),
             Commands.BadInputException => Bad(error.Message),
             BadHttpRequestException bad => Of(bad.StatusCode, "The request cannot be read", bad.InnerException?.Message ?? bad.Message),
+            StoreException when error.Message.StartsWith("There is no run", StringComparison.Ordinal) || error.Message.Contains("has no attachment", StringComparison.Ordinal) =>
+                Of(StatusCodes.Status404NotFound, "No such run", error.Message),
             StoreException => Of(StatusCodes.Status503ServiceUnavailable, "The record cannot be read or written", error.Message),
             // What went wrong inside is for the log; a stranger learns nothing from it.
             _ => Of(StatusCodes.Status500InternalServerError, "The host failed at this", "See the host's log."),

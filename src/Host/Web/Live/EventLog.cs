@@ -24,6 +24,16 @@ internal sealed class LiveEvent(long number, string type, string bench, object d
     public byte[] Json => _json ??= JsonSerializer.SerializeToUtf8Bytes(data, data.GetType(), Commands.Json.Compact);
 }
 
+/// <summary>A bench's instruments, of which only the newest are worth sending; so they have no place in the log.</summary>
+internal sealed class NowEvent(long version, NowDocument document)
+{
+    private byte[]? _json;
+
+    public long Version => version;
+
+    public byte[] Json => _json ??= JsonSerializer.SerializeToUtf8Bytes(document, Commands.Json.Compact);
+}
+
 /// <summary>
 /// The newest events, numbered. A reader asks for what came after the last number it has: nothing is kept for a reader, so
 /// a slow or dead one costs nothing, and one that comes back in time misses nothing. Thread-safe.

@@ -2,6 +2,7 @@ using Lampwarden.Acquisition;
 using Lampwarden.Analysis.Watching;
 using Lampwarden.Host.Alerting;
 using Lampwarden.Host.Soaking;
+using Lampwarden.Host.Web.Api;
 
 namespace Lampwarden.Host.Web.Live;
 
@@ -27,7 +28,7 @@ internal sealed class LiveBench
     private bool _blind;
     private string? _sentence;
     private string? _run;
-    private string? _unitLabel;
+    private double _idleAmps = double.NaN;
     private DateTimeOffset? _startedUtc;
     private Verdict? _verdict;
     private IReadOnlyList<string> _reasons = [];
@@ -56,12 +57,15 @@ internal sealed class LiveBench
                 case WaitingForSwitchOn waiting:
                     Wait(waiting.LineAmps);
                     return;
-                case BenchIdle idle:
-                    Rest(idle);
+                case IdleLook look:
+                    _last = new Observation(_last.Seconds, look.LineAmps, look.MainsVolts);
+                    (_idleAmps, _moved) = (look.LineAmps, _phase is "idle");
+                    return;
+                case DeskChanged desk:
+                    Rest(desk);
                     break;
                 case PlanChanged planned:
                     Take(planned.Plan);
-                    _unitLabel = planned.UnitLabel ?? _unitLabel;
                     break;
                 case RunBegan began:
                     Begin(began);
@@ -73,7 +77,7 @@ internal sealed class LiveBench
                     _alerts[change.Change.Alert.Number] = change.Change.Alert;
                     break;
                 case BringUpMoved moved:
-                    _bringUp = moved.Document;
+                    _bringUp = new BringUpDocument(PredictEndpoints.Documents(moved.Status.Steps), moved.Status.At, moved.Status.State, moved.Status.Sentence, moved.Status.Over);
                     break;
                 case RunEnded ended:
                     (_phase, _verdict, _reasons, _bringUp) = ("ended", ended.Judgement.Verdict, ended.Judgement.Reasons, null);
@@ -168,14 +172,13 @@ internal sealed class LiveBench
         _sentence = _blind ? "Waiting for switch-on, but the meter gives no reading." : "Waiting for switch-on: the run begins when current flows.";
     }
 
-    private void Rest(BenchIdle idle)
+    private void Rest(DeskChanged desk)
     {
-        _canStart = idle.CanStart;
-        _canEnd = idle.CanEnd;
-        if (idle.Idle && _phase != "ended")
+        (_canStart, _canEnd) = (desk.CanStart, desk.CanEnd);
+        if (desk.Idle && _phase != "ended")
         {
-            _phase = "idle";
-            _sentence = "No soak: nobody watches this bench.";
+            Clear();
+            (_phase, _sentence, _bringUp) = ("idle", "No soak: nobody watches this bench.", null);
         }
     }
 
@@ -204,10 +207,12 @@ internal sealed class LiveBench
         }
     }
 
-    private NowDocument Now() => _instruments.Now(_run, _last, _sentence);
+    private NowDocument Now() => _phase == "idle" && _idleAmps > _plan.SwitchedOnAmps
+        ? _instruments.Now(null, _last, "Current flows, but no soak was started: nobody watches this unit.")
+        : _instruments.Now(_run, _last, _sentence);
 
     private BenchDocument Document() => new(
-        _plan.Name, _plan.Options.Mains, _plan.Bank.Text, _tree, _plan.Unit.Text, _unitLabel, _phase, _blind, _sentence,
+        _plan.Name, _plan.Options.Mains, _plan.Bank.Text, _tree, _plan.Unit.Text, _plan.Options.UnitLabel, _phase, _blind, _sentence,
         _run, _startedUtc, _last.Seconds, _plan.PlannedSeconds, _plan.Prediction,
         [.. _findings.Values.Select(FindingEntry.Of)], [.. _alerts.Values], _verdict, _reasons, _bringUp, _canStart, _canEnd, Now());
 }

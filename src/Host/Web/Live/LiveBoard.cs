@@ -17,6 +17,7 @@ public sealed class LiveBoard : ISoakListener, IAsyncDisposable
     private readonly Dictionary<string, LiveBench> _benches;
     private readonly Dictionary<string, NowEvent> _now = [];
     private readonly Lock _nowGate = new();
+    private long _nowVersion;
     private readonly double _stuckSeconds;
     private readonly CancellationTokenSource _stop = new();
     private Task? _loop;
@@ -89,7 +90,7 @@ public sealed class LiveBoard : ISoakListener, IAsyncDisposable
             {
                 lock (_nowGate)
                 {
-                    _now[name] = new NowEvent(name, (_now.GetValueOrDefault(name)?.Version ?? 0) + 1, now);
+                    _now[name] = new NowEvent(++_nowVersion, now);
                 }
             }
         }

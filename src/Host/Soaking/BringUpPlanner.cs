@@ -1,0 +1,82 @@
+using Lampwarden.Analysis.Lamps;
+using Lampwarden.Host.Configuration;
+
+namespace Lampwarden.Host.Soaking;
+
+/// <summary>Finds the steps by which a bank can be switched in lamp by lamp: the smallest part that carries the unit first.</summary>
+public static class BringUpPlanner
+{
+    /// <summary>The steps; the last is the whole bank. One step only where nothing can be left out.</summary>
+    /// <param name="whole">The bench with its whole bank.</param>
+    /// <param name="inventory">Lamps its bank text may name.</param>
+    public static IReadOnlyList<BringUpStep> Steps(BenchPlan whole, LampInventory inventory)
+    {
+        var plans = new List<BenchPlan> { whole };
+        var without = new HashSet<int>();
+        while (Largest(whole.Bank, without) is { } lamp)
+        {
+            without.Add(lamp);
+            var text = Without(whole.Bank.Root, without)!;
+            plans.Add(BenchPlan.From(whole.Options.With(bank: text), inventory));
+        }
+
+        plans.Reverse();
+        // A part that cannot carry the unit says nothing about it: the unit would only try to start.
+        var useful = plans.Where((plan, index) => plan.Prediction.Steady.Exists || index == plans.Count - 1).ToList();
+        return [.. useful.Select((plan, index) => Step(plan, index, useful.Count))];
+    }
+
+    private static BringUpStep Step(BenchPlan plan, int index, int count)
+    {
+        var (band, shorted) = (plan.Prediction.Band, plan.Prediction.Shorted.LineAmps);
+        var why = index == 0
+            ? $"The least that carries the unit: a short could draw no more than {Narration.Amps(shorted)}."
+            : index == count - 1
+                ? "The bank for the soak."
+                : $"A little more: a short could draw {Narration.Amps(shorted)}.";
+        // Midway between health and a dead short, in ratios.
+        return new BringUpStep(plan, band.LowAmps, band.HighAmps, Math.Sqrt(band.HighAmps * Math.Max(shorted, band.HighAmps)), why);
+    }
+
+    // The largest lamp that can be left out with a way for the current still there.
+    private static int? Largest(Bank bank, HashSet<int> without)
+    {
+        var candidates = Enumerable.Range(0, bank.Lamps.Count)
+            .Where(lamp => !without.Contains(lamp) && bank.Lamps[lamp].Filament is not null && Without(bank.Root, [.. without, lamp]) is not null)
+            .OrderByDescending(lamp => bank.Lamps[lamp].RatedWatts);
+        return candidates.Select(lamp => (int?)lamp).FirstOrDefault();
+    }
+
+    // The text of what is left of a part; null where it carries no current any more.
+    private static string? Without(BankPart root, HashSet<int> without)
+    {
+        var next = 0;
+        return Text(root, out _);
+
+        string? Text(BankPart part, out bool compound)
+        {
+            compound = false;
+            switch (part)
+            {
+                case LampPart leaf:
+                    return without.Contains(next++) ? null : leaf.Lamp.Name;
+                case SeriesPart series:
+                    var chain = series.Parts.Select(inner => Wrapped(inner)).ToList();
+                    compound = chain.Count > 1;
+                    return chain.Contains(null) ? null : string.Join(" + ", chain);
+                case ParallelPart parallel:
+                    var branches = parallel.Parts.Select(inner => Wrapped(inner)).Where(text => text is not null).ToList();
+                    compound = branches.Count > 1;
+                    return branches.Count == 0 ? null : string.Join(" || ", branches);
+                default:
+                    throw new InvalidOperationException("A bank has lamps, series and parallel parts only.");
+            }
+        }
+
+        string? Wrapped(BankPart part)
+        {
+            var text = Text(part, out var compound);
+            return compound && text is not null ? $"({text})" : text;
+        }
+    }
+}
