@@ -15,7 +15,7 @@ public sealed class RehearsalClock : FakeTimeProvider, IDisposable
 
     // So long, in real time, a pulse is waited for: the first while programs start, later ones until a cable must be pulled.
     private static readonly TimeSpan FirstPatience = TimeSpan.FromSeconds(5);
-    private static readonly TimeSpan Patience = TimeSpan.FromMilliseconds(400);
+    private static readonly TimeSpan Patience = TimeSpan.FromMilliseconds(1500);
 
     private readonly CancellationTokenSource _over = new();
     private readonly Thread _thread;

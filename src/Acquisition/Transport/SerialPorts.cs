@@ -27,4 +27,16 @@ public static class SerialPorts
 
         return names;
     }
+
+    /// <summary>Refuses a port that is not there, before anything else is begun. A port that is busy or forbidden shows when it is opened.</summary>
+    /// <param name="port">A device path or name.</param>
+    /// <exception cref="TransportException">There is no such port; the message names those found.</exception>
+    public static void EnsurePresent(string port)
+    {
+        var present = OperatingSystem.IsWindows() ? List().Contains(port, StringComparer.OrdinalIgnoreCase) : File.Exists(port);
+        if (!present)
+        {
+            throw SerialPortDiagnosis.Explain(new TransportOptions { Port = port }, new FileNotFoundException(port));
+        }
+    }
 }

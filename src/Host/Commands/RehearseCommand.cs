@@ -118,7 +118,7 @@ internal sealed class RehearseCommand : CliCommand
     private static List<string> Missing(Scenario scenario, SoakDocument document, RehearsalNarrator narrator, BenchPlan plan)
     {
         var missing = new List<string>();
-        foreach (var signature in scenario.Expect.Findings.Select(WatchingNames.ParseSignature))
+        foreach (var signature in (scenario.Expect.Findings ?? []).Select(WatchingNames.ParseSignature))
         {
             if (!document.Findings.Any(finding => finding.Signature == signature))
             {
@@ -126,7 +126,7 @@ internal sealed class RehearseCommand : CliCommand
             }
         }
 
-        if (scenario.Expect.Findings.Count == 0 && document.Findings.FirstOrDefault(finding => finding.Severity != Severity.Notice) is { } cry)
+        if (scenario.Expect.Findings is { Count: 0 } && document.Findings.FirstOrDefault(finding => finding.Severity != Severity.Notice) is { } cry)
         {
             missing.Add($"a finding {cry.Signature.Text()} that nobody scripted");
         }
@@ -137,7 +137,7 @@ internal sealed class RehearseCommand : CliCommand
         }
 
         var share = narrator.AmpsAtFirstAlert / plan.Prediction.Shorted.LineAmps;
-        if (share > scenario.Expect.RaisedBelowShareOfShorted)
+        if (scenario.Expect.RaisedBelowShareOfShorted < 1 && share > scenario.Expect.RaisedBelowShareOfShorted)
         {
             missing.Add(string.Create(CultureInfo.InvariantCulture, $"the first alert came at {share:P0} of the shorted current"));
         }

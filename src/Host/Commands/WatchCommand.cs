@@ -1,4 +1,5 @@
 using System.CommandLine;
+using Lampwarden.Acquisition.Transport;
 using Lampwarden.Analysis.Watching;
 using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Soaking;
@@ -31,6 +32,12 @@ internal sealed class WatchCommand : CliCommand
         var address = parsed.GetValue(_noPage) ? null : PageAddress.Of(options.Web, parsed.GetValue(_config)!);
         var inventory = Inventory.Of(options.Lamps);
         var plans = options.Benches.Select(bench => BenchPlan.From(bench, inventory)).ToList();
+        // A port mistyped is told at once and leaves no empty record; one that goes away later is waited for.
+        foreach (var meter in options.Benches.SelectMany(bench => bench.Meters).Where(meter => meter.Transport.Kind == "serial"))
+        {
+            SerialPorts.EnsurePresent(meter.Transport.Port);
+        }
+
         foreach (var plan in plans)
         {
             terminal.Prose.WriteLine($"{plan.Name}: {plan.Unit.Text} behind {plan.Bank.Text} at {plan.Mains}. {plan.Outlook}");

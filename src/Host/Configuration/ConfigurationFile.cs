@@ -32,7 +32,7 @@ public static class ConfigurationFile
         }
         catch (Exception error) when (error is InvalidDataException or FormatException)
         {
-            throw new ConfigurationException(path, [new Fault("file", null, $"is not JSON: {error.InnerException?.Message ?? error.Message}")]);
+            throw new ConfigurationException(path, [new Fault("file", null, $"is not JSON: {error.GetBaseException().Message}")]);
         }
 
         var faults = new List<Fault>();

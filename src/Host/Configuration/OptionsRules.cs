@@ -25,7 +25,7 @@ internal static class OptionsRules
             faults.Add(new Fault("benches", null, "at least one bench must be described"));
         }
 
-        var inventory = faults.Count == 0 ? Inventory.Of(options.Lamps) : null;
+        var inventory = !faults.Exists(fault => fault.Key.StartsWith("lamps", StringComparison.Ordinal)) ? Inventory.Of(options.Lamps) : null;
         for (var index = 0; index < options.Benches.Count; index++)
         {
             CheckBench(options.Benches[index], string.Create(CultureInfo.InvariantCulture, $"benches[{index}]"), options, inventory, faults);
@@ -59,18 +59,16 @@ internal static class OptionsRules
 
     private static void CheckBench(BenchOptions bench, string key, LampwardenOptions options, LampInventory? inventory, List<Fault> faults)
     {
-        Mains? mains = null;
+        // A faulty mains must not hide a faulty bank: they are read as for another mains then.
+        var mains = new Mains(230, 50);
         Try($"{key}.mains", bench.Mains, () => mains = Mains.Parse(bench.Mains), faults);
-        if (mains is not null)
+        // With a faulty inventory the names in a bank text cannot be judged; the lamp's own fault is enough.
+        if (inventory is not null || !options.Lamps.Any(lamp => lamp.Name.Length > 0 && bench.Bank.Contains(lamp.Name, StringComparison.Ordinal)))
         {
-            // With a faulty inventory the names in a bank text cannot be judged; the lamp's own fault is enough.
-            if (inventory is not null || !options.Lamps.Any(lamp => bench.Bank.Contains(lamp.Name, StringComparison.Ordinal)))
-            {
-                Try($"{key}.bank", bench.Bank, () => Bank.Parse(bench.Bank, mains, inventory), faults);
-            }
-
-            Try($"{key}.unit", bench.Unit, () => Unit.Parse(bench.Unit, mains), faults);
+            Try($"{key}.bank", bench.Bank, () => Bank.Parse(bench.Bank, mains, inventory), faults);
         }
+
+        Try($"{key}.unit", bench.Unit, () => Unit.Parse(bench.Unit, mains), faults);
 
         CheckUnique(bench.Meters.Select(meter => meter.Name), $"{key}.meters", faults);
         var lineMeters = bench.Meters.Count(meter => meter.Quantity == Quantity.LineCurrent);

@@ -42,8 +42,8 @@ public sealed class ConfigurationFileTests : IDisposable
             """));
 
         Assert.Equal(
-            ["lamps[0].ratedWatts", "benches[0].meters[0].transport.kind", "benches[0].meters[0].readingsPerSecond", "benches[0].meters[0].colour", "benches[0].bank"],
-            error.Faults.Select(fault => fault.Key));
+            ["benches[0].bank", "benches[0].meters[0].colour", "benches[0].meters[0].readingsPerSecond", "benches[0].meters[0].transport.kind", "lamps[0].ratedWatts"],
+            error.Faults.Select(fault => fault.Key).Order(StringComparer.Ordinal));
         Assert.Contains("lamps[0].ratedWatts is '-5': must lie between 1 and 2000", error.Message, StringComparison.Ordinal);
         Assert.Contains("benches[0].meters[0].readingsPerSecond is 'fast': expected a number", error.Message, StringComparison.Ordinal);
         Assert.Contains("no such key; expected one of name,", error.Message, StringComparison.Ordinal);
@@ -80,7 +80,7 @@ public sealed class ConfigurationFileTests : IDisposable
 
     [Theory]
     [InlineData("\"quantity\": \"mainsVoltage\"", "exactly one meter must measure lineCurrent; 0 do")]
-    [InlineData("\"protocol\": { \"kind\": \"lines\", \"pattern\": \"([0-9\" }", "Not enough )'s")]
+    [InlineData("\"protocol\": { \"kind\": \"lines\", \"pattern\": \"([0-9\" }", "Unterminated [] set")]
     [InlineData("\"protocol\": { \"query\": \"READ\" }", "a question ends with '?'")]
     public void Load_RuleAcrossKeys_IsStated(string meterKey, string expected)
     {

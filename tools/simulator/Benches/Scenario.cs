@@ -138,8 +138,8 @@ public sealed class ScenarioFault
 /// <summary>What must come out of a rehearsal of the scenario.</summary>
 public sealed class ScenarioExpectation
 {
-    /// <summary>Signatures that must be found.</summary>
-    public IList<string> Findings { get; set; } = [];
+    /// <summary>Signatures that must be found; an empty list for a scenario in which nothing may be; null for no rule.</summary>
+    public IList<string>? Findings { get; set; }
 
     /// <summary>The verdict that must come; null for any.</summary>
     [AllowedValues(null, "passed", "failed", "incomplete")]

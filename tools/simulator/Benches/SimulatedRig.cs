@@ -16,6 +16,7 @@ public sealed class SimulatedRig : IAsyncDisposable
     private readonly List<SimulatedMeter> _meters = [];
     private readonly CancellationTokenSource _over = new();
     private readonly Task _cableScript;
+    private int _asked;
 
     /// <summary>Switches the rig on: the meters answer from now on, mains comes at the scenario's time.</summary>
     /// <param name="scenario">What will happen.</param>
@@ -31,7 +32,7 @@ public sealed class SimulatedRig : IAsyncDisposable
         {
             var port = makePort();
             _ports.Add(port);
-            _meters.Add(new SimulatedMeter(Traits(scenario, quantity), new Asked(Bench, time as RehearsalClock), port, time, start));
+            _meters.Add(new SimulatedMeter(Traits(scenario, quantity), new CountingBench(this, time as RehearsalClock), port, time, start));
             reached.Add(new RigMeter(quantity == MeasuredQuantity.LineCurrent ? "line" : "mains", quantity, port is TcpInstrumentPort ? "tcp" : "serial", port.Place));
         }
 
@@ -44,6 +45,9 @@ public sealed class SimulatedRig : IAsyncDisposable
 
     /// <summary>Where the meters are.</summary>
     public IReadOnlyList<RigMeter> Meters { get; }
+
+    /// <summary>How often the line current was asked for so far.</summary>
+    public int Asked => Volatile.Read(ref _asked);
 
     /// <summary>Switches the rig off and closes its wires.</summary>
     public async ValueTask DisposeAsync()
@@ -75,16 +79,17 @@ public sealed class SimulatedRig : IAsyncDisposable
     };
 
     /// <summary>The bench, telling the clock whenever its line current is asked for.</summary>
-    private sealed class Asked(SimulatedBench bench, RehearsalClock? clock) : ISimulatedQuantity
+    private sealed class CountingBench(SimulatedRig rig, RehearsalClock? clock) : ISimulatedQuantity
     {
         public double Rms(MeasuredQuantity quantity, double simulatedSeconds, double windowSeconds)
         {
             if (quantity == MeasuredQuantity.LineCurrent)
             {
                 clock?.Pulse();
+                Interlocked.Increment(ref rig._asked);
             }
 
-            return bench.Rms(quantity, simulatedSeconds, windowSeconds);
+            return rig.Bench.Rms(quantity, simulatedSeconds, windowSeconds);
         }
     }
 
