@@ -1,3 +1,5 @@
+using System.Globalization;
+using System.Text.Json;
 using Microsoft.Extensions.Configuration;
 
 namespace Lampwarden.Host.Configuration;
@@ -32,7 +34,7 @@ public static class ConfigurationFile
         }
         catch (Exception error) when (error is InvalidDataException or FormatException)
         {
-            throw new ConfigurationException(path, [new Fault("file", null, $"is not JSON: {error.GetBaseException().Message}")]);
+            throw new ConfigurationException(path, [new Fault("file", null, NotJson(error.GetBaseException()))]);
         }
 
         var faults = new List<Fault>();
@@ -41,5 +43,14 @@ public static class ConfigurationFile
         OptionsRules.Check(options, faults);
         AlertsCheck.Run(options, faults);
         return faults.Count == 0 ? options : throw new ConfigurationException(path, faults);
+    }
+
+    private static string NotJson(Exception error)
+    {
+        // The reader counts lines and bytes from 0, and says so after its sentence; people count from 1.
+        var sentence = error.Message.Split(" LineNumber:")[0];
+        return error is JsonException { LineNumber: { } line, BytePositionInLine: { } column }
+            ? string.Create(CultureInfo.InvariantCulture, $"is not JSON at line {line + 1}, column {column + 1}: {sentence}")
+            : $"is not JSON: {sentence}";
     }
 }

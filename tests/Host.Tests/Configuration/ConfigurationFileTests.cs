@@ -68,7 +68,7 @@ public sealed class ConfigurationFileTests : IDisposable
     {
         var error = Assert.Throws<ConfigurationException>(() => Load("{\n \"benches\": [ }"));
         Assert.Contains(_file, error.Message, StringComparison.Ordinal);
-        Assert.Contains("LineNumber: 1", error.Message, StringComparison.Ordinal);
+        Assert.Contains("line 2, column 15", error.Message, StringComparison.Ordinal);
     }
 
     [Fact]
