@@ -60,5 +60,6 @@ public static class CommandLine
         new CompareCommand(),
         new ReferenceCommand(),
         new ReportCommand(),
+        CutOffResetCommand.Group(),
     };
 }

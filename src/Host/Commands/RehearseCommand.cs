@@ -71,6 +71,7 @@ internal sealed class RehearseCommand : CliCommand
         var documents = await SoakHost.RunAsync(
             [plan], parsed.GetValue(_record) ?? new RecordingOptions().Folder, time, [narrator], logToConsole: false, started: time.Begin,
             parsed.GetValue(_noPage) ? null : new PageOrder(PageAddress.Of(new WebOptions(), "rehearse"), LampInventory.Empty, StaysOpen: false, MayFail: true, prose),
+            attended: null,
             cancellation);
         cancellation.ThrowIfCancellationRequested();
         var document = documents.Count == 1 ? documents[0] : null;

@@ -3,6 +3,7 @@ using Lampwarden.Acquisition.Transport;
 using Lampwarden.Analysis.Watching;
 using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Soaking;
+using Lampwarden.Host.Unattended;
 using Lampwarden.Host.Web;
 using Lampwarden.Host.Web.Access;
 
@@ -48,7 +49,9 @@ internal sealed class WatchCommand : CliCommand
         ending.CancelAfter(duration);
         var documents = await SoakHost.RunAsync(
             plans, parsed.GetValue(_record) ?? options.Recording.Folder, TimeProvider.System, [], logToConsole: true, started: null,
-            address is null ? null : new PageOrder(address, inventory, StaysOpen: true, MayFail: false, terminal.Prose), ending.Token);
+            address is null ? null : new PageOrder(address, inventory, StaysOpen: true, MayFail: false, terminal.Prose),
+            new AttendanceOrder(options, parsed.GetValue(_config)!),
+            ending.Token);
         Finish(terminal, documents);
         return cancellation.IsCancellationRequested ? ExitCode.Interrupted : Answer(documents, plans.Count);
     }

@@ -1,5 +1,4 @@
 using Lampwarden.Analysis.Watching;
-using Lampwarden.Host.Alerting;
 
 namespace Lampwarden.Host.Configuration;
 
@@ -14,9 +13,9 @@ internal static class AlertsCheck
         var alerts = options.Alerts;
         for (var index = 0; index < alerts.Latch.Count; index++)
         {
-            if (!Signatures.Contains(alerts.Latch[index]) && alerts.Latch[index] != AlertCauses.CutOff)
+            if (!Signatures.Contains(alerts.Latch[index]))
             {
-                faults.Add(new Fault($"alerts.latch[{index}]", alerts.Latch[index], $"must be one of {string.Join(", ", Signatures)}, {AlertCauses.CutOff}"));
+                faults.Add(new Fault($"alerts.latch[{index}]", alerts.Latch[index], $"must be one of {string.Join(", ", Signatures)}"));
             }
         }
 

@@ -17,7 +17,7 @@ public sealed class AlertsOptions
     [Range(0.0, 3600.0)]
     public double OffDelaySeconds { get; set; } = 60;
 
-    /// <summary>Causes that a person must reset; empty takes hard-short, developing-short, runaway and cut-off.</summary>
+    /// <summary>Causes that a person must reset; empty takes hard-short, developing-short and runaway.</summary>
     public IList<string> Latch { get; set; } = [];
 
     /// <summary>Minutes until a critical alert that nobody acknowledged is told again; 0 for never, to 1440.</summary>

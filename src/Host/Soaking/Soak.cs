@@ -39,7 +39,7 @@ public sealed class Soak
     {
         (_plan, _store, _around, _bringUp) = (plan, store, around, bringUp);
         _ledger = new SoakLedger(bringUp is null ? plan.WatchSettings : plan.WatchSettings with { Expectation = bringUp.Plan.WatchSettings.Expectation });
-        _alerts = new AlertBook(plan.Name);
+        _alerts = new AlertBook(plan.Name, around.Rules);
         _meters = new MeterRoll(plan, around);
     }
 
@@ -206,7 +206,7 @@ public sealed class Soak
         }
 
         var changes = _ledger.Take(observation, look.Reason);
-        Tell(new Observed(_plan.Name, observation, _ledger.Watch.Phase, () => _ledger.Watch.Sentence));
+        Tell(new Observed(_plan.Name, observation, _ledger.Watch.Phase, () => _ledger.Watch.Sentence) { Utc = look.Utc });
         Publish(changes);
         foreach (var change in _alerts.Tick(observation.Seconds))
         {

@@ -24,7 +24,11 @@ public sealed record RunBegan(string Bench, string Run, BenchPlan Plan, DateTime
 /// <param name="Observation">What the meters showed.</param>
 /// <param name="Phase">How far the watch has come.</param>
 /// <param name="Sentence">What the watch thinks; to be asked for only while this event is heard, and not at every reading.</param>
-public sealed record Observed(string Bench, Observation Observation, WatchPhase Phase, Func<string> Sentence) : SoakEvent(Bench);
+public sealed record Observed(string Bench, Observation Observation, WatchPhase Phase, Func<string> Sentence) : SoakEvent(Bench)
+{
+    /// <summary>When the reading's first byte arrived.</summary>
+    public DateTimeOffset Utc { get; init; }
+}
 
 /// <summary>A finding was raised, amended or cleared.</summary>
 public sealed record FindingChanged(string Bench, double Seconds, FindingChange Change) : SoakEvent(Bench);

@@ -1,6 +1,7 @@
 using Lampwarden.Analysis.Lamps;
 using Lampwarden.Host.Alerting;
 using Lampwarden.Host.Recording;
+using Lampwarden.Host.Unattended;
 using Lampwarden.Host.Web;
 using Lampwarden.Host.Web.Live;
 using Serilog;
@@ -19,6 +20,7 @@ public static class SoakHost
     /// <param name="logToConsole">Whether the log also goes to standard error.</param>
     /// <param name="started">Called once every soak is on its way; null for nothing.</param>
     /// <param name="page">Serves the page; null for none.</param>
+    /// <param name="attended">How people are told, and who notices when the service dies; null for the log alone.</param>
     /// <param name="stop">Ends every soak; the runs are still closed and stored.</param>
     /// <returns>What came of each run that began.</returns>
     /// <exception cref="StoreException">The store cannot be opened or written.</exception>
@@ -30,20 +32,26 @@ public static class SoakHost
         bool logToConsole,
         Action? started,
         PageOrder? page,
+        AttendanceOrder? attended,
         CancellationToken stop)
     {
         using var store = SoakStore.Open(recordFolder, time);
+        using var log = new Serilog.Extensions.Logging.SerilogLoggerFactory(MakeLog(recordFolder, logToConsole), dispose: true);
+        var logger = log.CreateLogger("Lampwarden");
+        await using var attendance = attended is null ? null : new Attendance(attended, [.. plans.Select(plan => plan.Name)], recordFolder, () => store.Health, logger);
+        var listenersAndOurs = (IReadOnlyList<ISoakListener>)[.. attendance?.Listeners ?? [], .. listeners];
         await using var board = page is null ? null : new LiveBoard(plans);
         var builder = Microsoft.Extensions.Hosting.Host.CreateEmptyApplicationBuilder(new HostApplicationBuilderSettings { ContentRootPath = AppContext.BaseDirectory });
-        builder.Services.AddSerilog(MakeLog(recordFolder, logToConsole), dispose: true);
+        builder.Services.AddSingleton<ILoggerFactory>(log);
         builder.Services.Configure<HostOptions>(options => options.ShutdownTimeout = TimeSpan.FromSeconds(15));
         builder.Services.AddSingleton<IHostLifetime, CommandLifetime>();
         builder.Services.AddSingleton(services => new SoakResults(plans.Count, services.GetRequiredService<IHostApplicationLifetime>().StopApplication));
-        builder.Services.AddSingleton(services =>
-        {
-            var logger = services.GetRequiredService<ILoggerFactory>().CreateLogger("Lampwarden");
-            return new SoakSurroundings(time, logger, [new LogRoute(logger)], board is null ? listeners : [.. listeners, board]);
-        });
+        builder.Services.AddSingleton(new SoakSurroundings(
+            time,
+            logger,
+            attendance is null ? [new LogRoute(logger)] : [new LogRoute(logger), attendance.Dispatch],
+            board is null ? listenersAndOurs : [.. listenersAndOurs, board],
+            attendance?.Rules));
         builder.Services.AddSingleton(services => plans.Select(plan => new BenchDesk(
             plan, page?.Inventory ?? LampInventory.Empty, store, services.GetRequiredService<SoakSurroundings>(), page?.StaysOpen ?? false)).ToList());
         for (var index = 0; index < plans.Count; index++)
@@ -57,10 +65,12 @@ public static class SoakHost
 
         using var host = builder.Build();
         await using var served = page is null ? null : await page.OpenAsync(
-            new PageParts(board!, host.Services.GetRequiredService<List<BenchDesk>>(), store, host.Services.GetRequiredService<ILoggerFactory>()));
+            new PageParts(board!, host.Services.GetRequiredService<List<BenchDesk>>(), store, log, attendance));
         await host.StartAsync(CancellationToken.None);
+        attendance?.Ready(plans.Count);
         started?.Invoke();
         var results = host.Services.GetRequiredService<SoakResults>();
+        await using var stopping = stop.Register(() => attendance?.Stopping());
         await host.WaitForShutdownAsync(stop);
         return results.Fault is { } fault ? throw new IOException($"A soak ended by a fault: {fault.Message}", fault) : results.Documents;
     }

@@ -1,5 +1,6 @@
 using Lampwarden.Acquisition;
 using Lampwarden.Host.Alerting;
+using Lampwarden.Host.Alerting.Life;
 
 namespace Lampwarden.Host.Soaking;
 
@@ -11,4 +12,6 @@ internal readonly record struct SoakInput(MeterOptions? Meter, MeterEvent Event,
 /// <param name="Logger">For structured events.</param>
 /// <param name="Routes">Who is told of alerts.</param>
 /// <param name="Listeners">Who looks on.</param>
-public sealed record SoakSurroundings(TimeProvider Time, ILogger Logger, IReadOnlyList<IAlertRoute> Routes, IReadOnlyList<ISoakListener> Listeners);
+/// <param name="Rules">How alerts live; null for the defaults.</param>
+public sealed record SoakSurroundings(
+    TimeProvider Time, ILogger Logger, IReadOnlyList<IAlertRoute> Routes, IReadOnlyList<ISoakListener> Listeners, AlertRules? Rules = null);

@@ -1,6 +1,7 @@
 using Lampwarden.Analysis.Lamps;
 using Lampwarden.Host.Recording;
 using Lampwarden.Host.Soaking;
+using Lampwarden.Host.Unattended;
 using Lampwarden.Host.Web.Access;
 using Lampwarden.Host.Web.Live;
 
@@ -11,7 +12,8 @@ namespace Lampwarden.Host.Web;
 /// <param name="Desks">All benches, to be acted on.</param>
 /// <param name="Store">Runs, past and present.</param>
 /// <param name="Loggers">For the page's own log.</param>
-public sealed record PageParts(LiveBoard Board, IReadOnlyList<BenchDesk> Desks, SoakStore Store, ILoggerFactory Loggers);
+/// <param name="Attendance">For the health and metrics endpoints; null for none.</param>
+public sealed record PageParts(LiveBoard Board, IReadOnlyList<BenchDesk> Desks, SoakStore Store, ILoggerFactory Loggers, Attendance? Attendance = null);
 
 /// <summary>How a command wants the page served.</summary>
 /// <param name="Address">Checked address and token.</param>

@@ -3,6 +3,7 @@ using Lampwarden.Host.Commands;
 using Lampwarden.Host.Web.Access;
 using Lampwarden.Host.Web.Api;
 using Lampwarden.Host.Web.Files;
+using Lampwarden.Host.Unattended;
 using Lampwarden.Host.Web.Live;
 using Microsoft.AspNetCore.Hosting;
 
@@ -52,6 +53,11 @@ public sealed class PageServer : IAsyncDisposable
         application.UseRouting();
         application.MapOpenApi("/api/openapi.json");
         Map(application);
+        if (parts.Attendance is { } attendance)
+        {
+            application.MapHealth(attendance.Health, attendance.Metrics);
+        }
+
         await application.StartAsync();
         parts.Board.Start();
         return new PageServer(application, parts.Board);

@@ -39,7 +39,7 @@ public sealed record AlertRules
     /// <summary>The signatures of a unit that must not be trusted again without a look.</summary>
     public static IReadOnlySet<string> DefaultLatching { get; } = new HashSet<string>(StringComparer.Ordinal)
     {
-        Signature.HardShort.Text(), Signature.DevelopingShort.Text(), Signature.Runaway.Text(), AlertCauses.CutOff,
+        Signature.HardShort.Text(), Signature.DevelopingShort.Text(), Signature.Runaway.Text(),
     };
 
     /// <summary>Spacing before the n-th repeat, counted from 0.</summary>
