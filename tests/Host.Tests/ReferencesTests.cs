@@ -26,7 +26,7 @@ public sealed class ReferencesTests
     public void Project_OfARoom_NamesNoProject(string path)
     {
         // The compiler drops references that no type uses, so the assembly alone would not show one that waits to be used.
-        var text = File.ReadAllText(Path.Combine(RepositoryRoot(), path));
+        var text = File.ReadAllText(Path.Combine(Repository.Root, path));
         Assert.DoesNotContain("ProjectReference", text, StringComparison.Ordinal);
     }
 
@@ -36,16 +36,5 @@ public sealed class ReferencesTests
         var banned = new[] { "System.Console", "System.IO.FileSystem", "System.Net.Sockets", "Microsoft.Extensions.Logging.Abstractions" };
         var references = typeof(Observation).Assembly.GetReferencedAssemblies().Select(reference => reference.Name!);
         Assert.Empty(references.Intersect(banned));
-    }
-
-    private static string RepositoryRoot()
-    {
-        var folder = new DirectoryInfo(AppContext.BaseDirectory);
-        while (!File.Exists(Path.Combine(folder.FullName, "Lampwarden.slnx")))
-        {
-            folder = folder.Parent ?? throw new InvalidOperationException("The tests must run inside the repository.");
-        }
-
-        return folder.FullName;
     }
 }
