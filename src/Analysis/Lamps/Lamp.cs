@@ -20,8 +20,16 @@ public sealed partial class Lamp
     private readonly Lazy<FilamentCurve>? curve;
 
     private Lamp(
-        string name, double ratedWatts, double ratedVolts, LampFill fill, double resistorOhms, Filament? filament, Lazy<FilamentCurve>? curve = null)
+        string name,
+        double ratedWatts,
+        double ratedVolts,
+        LampFill fill,
+        double resistorOhms,
+        Filament? filament,
+        LampTolerance tolerance,
+        Lazy<FilamentCurve>? curve = null)
     {
+        Tolerance = tolerance;
         (Name, RatedWatts, RatedVolts, Fill, ResistorOhms, Filament) = (name, ratedWatts, ratedVolts, fill, resistorOhms, filament);
         this.curve = filament is null ? null : curve ?? new Lazy<FilamentCurve>(() => new FilamentCurve(filament));
     }
@@ -40,6 +48,9 @@ public sealed partial class Lamp
 
     /// <summary>The filament; null for a plain resistor.</summary>
     public Filament? Filament { get; }
+
+    /// <summary>How well all this is known.</summary>
+    public LampTolerance Tolerance { get; }
 
     /// <summary>Resistance at room temperature, in ohms.</summary>
     public double ColdOhms => Filament?.ColdOhms ?? ResistorOhms;
@@ -71,7 +82,8 @@ public sealed partial class Lamp
             gas ? DefaultGasLeadShare : DefaultVacuumLeadShare,
             DefaultCoilFactor,
             roomKelvin);
-        return new Lamp(name, ratedWatts, ratedVolts, filled, double.NaN, filament);
+        return new Lamp(
+            name, ratedWatts, ratedVolts, filled, double.NaN, filament, gas ? LampTolerance.GasNameplate : LampTolerance.VacuumNameplate);
     }
 
     /// <summary>A plain resistor in a lamp's place, for comparison.</summary>
@@ -81,14 +93,19 @@ public sealed partial class Lamp
     public static Lamp PlainResistor(string name, double ohms)
     {
         Check(ohms is >= 1e-3 and <= 1e7, nameof(ohms), ohms, "A resistor in a lamp's place has 0.001 to 1e7 ohm.");
-        return new Lamp(name, double.NaN, double.NaN, LampFill.Resistor, ohms, null);
+        return new Lamp(name, double.NaN, double.NaN, LampFill.Resistor, ohms, null, LampTolerance.Resistor);
     }
 
     /// <summary>The same lamp under another name.</summary>
-    public Lamp Named(string name) => new(name, RatedWatts, RatedVolts, Fill, ResistorOhms, Filament, curve);
+    public Lamp Named(string name) => new(name, RatedWatts, RatedVolts, Fill, ResistorOhms, Filament, Tolerance, curve);
 
     /// <summary>The same lamp with another filament: a calibrated one, or one of a Monte Carlo draw.</summary>
-    public Lamp With(Filament filament) => new(Name, RatedWatts, RatedVolts, Fill, ResistorOhms, filament);
+    /// <param name="filament">The other filament.</param>
+    /// <param name="tolerance">How well it is known; null keeps what is said of this one.</param>
+    public Lamp With(Filament filament, LampTolerance? tolerance = null) =>
+        new(Name, RatedWatts, RatedVolts, Fill, ResistorOhms, filament, tolerance ?? Tolerance);
+
+    internal Lamp WithOhms(double ohms) => new(Name, RatedWatts, RatedVolts, Fill, ohms, null, Tolerance);
 
     /// <summary>
     /// Share of the rated light: Wien's law at 0.58 micrometres, where the eye sees most of a filament's light. Near rating it rises

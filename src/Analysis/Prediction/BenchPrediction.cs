@@ -1,4 +1,5 @@
 using Lampwarden.Analysis.Lamps;
+using Lampwarden.Analysis.Uncertainty;
 
 namespace Lampwarden.Analysis.Prediction;
 
@@ -6,6 +7,16 @@ namespace Lampwarden.Analysis.Prediction;
 /// What should happen on one bench with one unit. Property names are the contract of <c>predict --json</c>; NaN stands for a number
 /// that cannot be given.
 /// </summary>
+/// <param name="Mains">The supply.</param>
+/// <param name="Bank">The limiter.</param>
+/// <param name="Unit">What stands behind it.</param>
+/// <param name="Steady">The healthy steady state.</param>
+/// <param name="Inrush">The switch-on.</param>
+/// <param name="Shorted">The same bank with its output shorted.</param>
+/// <param name="Band">Where the settled meter should stay.</param>
+/// <param name="Contrast">Shorted over healthy current.</param>
+/// <param name="Notes">What a reader must know, a sentence or a few each.</param>
+/// <param name="Intervals">95 % interval of every number, by its path in the JSON document, such as <c>steady.lineAmps</c>.</param>
 public sealed record BenchPrediction(
     Mains Mains,
     BankSummary Bank,
@@ -15,7 +26,8 @@ public sealed record BenchPrediction(
     ShortedState Shorted,
     CurrentBand Band,
     double Contrast,
-    IReadOnlyList<string> Notes);
+    IReadOnlyList<string> Notes,
+    IReadOnlyDictionary<string, Interval> Intervals);
 
 /// <summary>The limiter in short.</summary>
 /// <param name="Text">Circuit notation.</param>

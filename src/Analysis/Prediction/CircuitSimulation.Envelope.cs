@@ -65,7 +65,8 @@ public sealed partial class CircuitSimulation
 
     private double EnvelopeRates(double[] temperatures, double[] rates)
     {
-        var bankOhms = JoinOhms(temperatures) + sourceOhms;
+        ReadFilaments(temperatures);
+        var bankOhms = JoinOhms() + sourceOhms;
         double amps;
         if (double.IsPositiveInfinity(FaultOhms))
         {
@@ -79,7 +80,7 @@ public sealed partial class CircuitSimulation
             amps = (MainsVolts + FaultOhms * unitAmps) / (bankOhms + FaultOhms);
         }
 
-        HeatLamps(amps, temperatures, rates);
+        HeatLamps(amps, rates);
         return amps;
     }
 }

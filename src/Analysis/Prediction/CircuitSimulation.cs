@@ -6,32 +6,38 @@ namespace Lampwarden.Analysis.Prediction;
 
 /// <summary>
 /// Mains, bank and unit in time: every filament's temperature (equation 8) and the unit's own states by fixed-step Runge-Kutta of
-/// fourth order, 100 steps to a cycle. A step allocates nothing. Not thread-safe.
+/// fourth order, 100 steps to a cycle, or a multiple of that for a unit that moves quicker. A step allocates nothing. Not thread-safe.
 /// </summary>
 public sealed partial class CircuitSimulation
 {
-    /// <summary>Steps in one mains cycle: RMS currents are then within 0.01 % of a finer division (docs/model.md).</summary>
-    public const int StepsPerCycle = 100;
+    /// <summary>Least steps in one mains cycle: RMS currents are then within 0.01 % of a finer division (docs/model.md).</summary>
+    public const int LeastStepsPerCycle = 100;
 
-    private const double OpenOhms = 1e12;
+    // Runge-Kutta of fourth order is stable to 2.8 time constants; half of that keeps it exact too.
+    private const double StepsPerTimeConstant = 0.7;
+    private const int MostStepsPerCycle = 5000;
 
-    private readonly BankNetwork network;
+    private const double OpenSiemens = 1e-12;
+
     private readonly FilamentGrid grid;
-    private readonly FilamentCoefficients[] filaments;
+    private readonly Node[] nodes;
+    private readonly LampInstant[] lamps;
     private readonly double sourceOhms;
-    private readonly double[] sine = new double[2 * StepsPerCycle];
-    private readonly double stepSeconds;
-    private readonly bool[] isOut;
 
-    // Work space: temperatures and rates of the four stages, joined resistances, currents.
+    // Work space: temperatures and rates of the four stages, joined conductances, volts.
     private readonly double[] kelvin;
     private readonly double[] stageKelvin;
     private readonly double[][] kelvinRates;
-    private readonly double[] nodeOhms;
+    private readonly double[] nodeSiemens;
+    private readonly double[] nodeVolts;
     private readonly double[] sums;
-    private readonly double[] through;
 
     private readonly Mains mains;
+    private readonly double leastOhms;
+    private readonly double mostOhms;
+    private double[] sine = [];
+    private double phaseDegrees;
+    private double stepSeconds;
     private UnitDynamics unit;
     private double[] state;
     private double[] stageState;
@@ -39,6 +45,7 @@ public sealed partial class CircuitSimulation
     private long steps;
     private int startIndex;
     private double startSeconds;
+    private double peakVolts;
     private bool isFresh;
 
     /// <param name="mains">The supply; its volts can be changed later.</param>
@@ -51,18 +58,20 @@ public sealed partial class CircuitSimulation
         Mains mains, Bank bank, Unit unit, double phaseDegrees = 0, IReadOnlyList<double>? startKelvin = null, double sourceOhms = 0)
     {
         (this.mains, Bank, MainsVolts, this.sourceOhms) = (mains, bank, mains.Volts, sourceOhms);
-        network = bank.Network;
-        var lamps = network.Lamps;
-        grid = FilamentGrid.At(lamps.FirstOrDefault(lamp => lamp.Filament is not null)?.Filament!.AmbientKelvin ?? Lamp.RoomKelvin);
-        filaments = [.. lamps.Select(lamp => lamp.Filament is null ? default : new FilamentCoefficients(lamp.Filament, grid))];
-        stepSeconds = 1 / (mains.Hertz * StepsPerCycle);
-        isOut = new bool[lamps.Length];
+        var network = bank.Network;
+        grid = FilamentGrid.At(network.Lamps.FirstOrDefault(lamp => lamp.Filament is not null)?.Filament!.AmbientKelvin ?? Lamp.RoomKelvin);
+        lamps = [.. network.Lamps.Select(MakeLamp)];
+        nodes = [.. network.Parent.Select((parent, node) =>
+            new Node(network.Leaf[node], parent, network.IsParallel[node], parent >= 0 && network.IsParallel[parent]))];
+        leastOhms = sourceOhms + bank.ColdOhms;
+        mostOhms = sourceOhms + network.Lamps.Sum(lamp => lamp.Filament?.HotOhms ?? lamp.ResistorOhms);
+        this.phaseDegrees = phaseDegrees;
         kelvin = new double[lamps.Length];
         stageKelvin = new double[lamps.Length];
         kelvinRates = MakeRates(lamps.Length);
-        nodeOhms = new double[network.Parent.Length];
-        sums = new double[network.Parent.Length];
-        through = new double[network.Parent.Length];
+        nodeSiemens = new double[nodes.Length];
+        nodeVolts = new double[nodes.Length];
+        sums = new double[nodes.Length];
         (unitModel, this.unit, state, stageState, stateRates) = (unit, unit.NewDynamics(mains), [], [], []);
         TakeUnit(unit);
         Reset(phaseDegrees, startKelvin);
@@ -74,6 +83,9 @@ public sealed partial class CircuitSimulation
     /// <summary>Seconds since the switch closed.</summary>
     public double Seconds => startSeconds + steps * stepSeconds;
 
+    /// <summary>Steps in one mains cycle with this unit.</summary>
+    public int StepsPerCycle => sine.Length / 2;
+
     /// <summary>Length of one step in seconds.</summary>
     public double StepSeconds => stepSeconds;
 
@@ -84,6 +96,7 @@ public sealed partial class CircuitSimulation
         set
         {
             field = value;
+            peakVolts = Math.Sqrt(2) * value;
             isFresh = false;
         }
     }
@@ -122,7 +135,7 @@ public sealed partial class CircuitSimulation
     }
 
     /// <summary>Supply at this instant.</summary>
-    public double SourceVolts => Math.Sqrt(2) * MainsVolts * sine[SineIndex(0)];
+    public double SourceVolts => peakVolts * sine[SineIndex(0)];
 
     /// <summary>Temperature of each filament in kelvin; for a plain resistor the temperature of the room.</summary>
     public ReadOnlySpan<double> FilamentKelvin => kelvin;
@@ -134,10 +147,8 @@ public sealed partial class CircuitSimulation
     public void Reset(double phaseDegrees, IReadOnlyList<double>? startKelvin = null)
     {
         (steps, startSeconds, isFresh, startIndex) = (0, 0, false, 0);
-        for (var half = 0; half < sine.Length; half++)
-        {
-            sine[half] = Math.Sin(2 * Math.PI * half / sine.Length + phaseDegrees * Math.PI / 180);
-        }
+        this.phaseDegrees = phaseDegrees;
+        FillSine();
 
         for (var lamp = 0; lamp < kelvin.Length; lamp++)
         {
@@ -154,7 +165,7 @@ public sealed partial class CircuitSimulation
     /// <summary>Burns a lamp out, or switches it off; or puts it back in.</summary>
     public void SetLampOut(int lamp, bool isOut)
     {
-        this.isOut[lamp] = isOut;
+        lamps[lamp].IsOut = isOut;
         isFresh = false;
     }
 
@@ -190,6 +201,13 @@ public sealed partial class CircuitSimulation
         return Math.Sqrt(sum / count);
     }
 
+    private LampInstant MakeLamp(Lamp lamp) => new()
+    {
+        HasFilament = lamp.Filament is not null,
+        Filament = lamp.Filament is null ? default : new FilamentCoefficients(lamp.Filament, grid),
+        Siemens = lamp.Filament is null ? 1 / lamp.ResistorOhms : 0,
+    };
+
     private static double[][] MakeRates(int length) => [new double[length], new double[length], new double[length], new double[length]];
 
     private int SineIndex(int halfStepsAhead) => (int)((startIndex + 2 * steps + halfStepsAhead) % sine.Length);
@@ -207,6 +225,30 @@ public sealed partial class CircuitSimulation
 
         response = null;
         isFresh = false;
+        var fastest = unit.FastestSeconds(leastOhms, mostOhms);
+        var multiple = Math.Ceiling(StepsPerTimeConstant / (fastest * mains.Hertz * LeastStepsPerCycle));
+        var perCycle = (int)Math.Clamp(multiple * LeastStepsPerCycle, LeastStepsPerCycle, MostStepsPerCycle);
+        if (perCycle == StepsPerCycle)
+        {
+            return;
+        }
+
+        // The place in the cycle is kept, to the nearest step.
+        var place = sine.Length == 0 ? 0 : SineIndex(0) / (double)sine.Length;
+        startSeconds = Seconds;
+        steps = 0;
+        sine = new double[2 * perCycle];
+        startIndex = 2 * (int)Math.Round(place * perCycle);
+        stepSeconds = 1 / (mains.Hertz * perCycle);
+        FillSine();
+    }
+
+    private void FillSine()
+    {
+        for (var half = 0; half < sine.Length; half++)
+        {
+            sine[half] = Math.Sin(2 * Math.PI * half / sine.Length + phaseDegrees * Math.PI / 180);
+        }
     }
 
     private void Refresh()
@@ -215,7 +257,7 @@ public sealed partial class CircuitSimulation
         {
             isFresh = true;
             LineAmps = Rates(SineIndex(0), kelvin, kelvinRates[0], state, stateRates[0]);
-            UnitVolts = SourceVolts - LineAmps * (sourceOhms + nodeOhms[^1]);
+            UnitVolts = SourceVolts - LineAmps * (sourceOhms + 1 / nodeSiemens[^1]);
         }
     }
 

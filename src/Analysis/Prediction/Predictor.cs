@@ -1,76 +1,89 @@
 using Lampwarden.Analysis.Lamps;
-using Lampwarden.Analysis.Tungsten;
+using Lampwarden.Analysis.Uncertainty;
 using Lampwarden.Analysis.Units;
 
 namespace Lampwarden.Analysis.Prediction;
 
-/// <summary>Says beforehand what a bench will do.</summary>
+/// <summary>Says beforehand what a bench will do, with an interval on every number.</summary>
 public static class Predictor
 {
-    private const double LongestSeconds = 20;
-
-    // Standard normal quantile for 95 % coverage.
-    private const double CoverageFactor = 1.96;
-
     /// <summary>Works out the steady state, the switch-on, the shorted state and the band of one bank and one unit.</summary>
-    public static BenchPrediction Predict(Mains mains, Bank bank, Unit unit, PredictionSettings? settings = null)
+    /// <param name="mains">The supply.</param>
+    /// <param name="bank">The limiter.</param>
+    /// <param name="unit">What stands behind it.</param>
+    /// <param name="settings">Meter and uncertainties; null takes the defaults.</param>
+    public static BenchPrediction Predict(Mains mains, Bank bank, Unit unit, PredictionSettings? settings = null) =>
+        Predict(mains, bank, unit, settings, out _, out _);
+
+    /// <summary>The same, with the two simulated switch-ons for a picture.</summary>
+    public static BenchPrediction Predict(
+        Mains mains, Bank bank, Unit unit, PredictionSettings? settings, out SwitchOn healthyRun, out SwitchOn shortedRun)
     {
         settings ??= new PredictionSettings();
-        var healthy = Work(mains, bank, unit, settings, out var steady);
-        var shorted = Work(mains, bank, ResistorUnit.Short, settings, out var shortedPoint);
-        var note = bank.Notes.Count == 0 ? null : string.Join(" ", bank.Notes);
+        var inputs = new BenchInputs(mains, bank, unit, settings);
+        var joined = new BenchInputs(mains, bank, unit, settings, joinEqualLamps: true);
+        var healthy = new BenchState(mains, bank, unit, settings, inputs, joined);
+        var shorted = new BenchState(mains, bank, ResistorUnit.Short, settings, inputs, joined);
+        (healthyRun, shortedRun) = (healthy.Transient, shorted.Transient);
+
+        var intervals = new SortedDictionary<string, Interval>(StringComparer.Ordinal);
+        var band = new CurrentBand(double.NaN, double.NaN, CoverageFactor.Coverage);
+        var shown = healthy.Exists ? MeterView.SettledShare(healthy.Point, settings.Meter) : double.NaN;
+        if (healthy.Exists)
+        {
+            var spread = new BenchIntervals(inputs, joined, settings).Fill(healthy, shorted, shown, settings.WithIntervals ? intervals : null);
+            band = new CurrentBand(Math.Max(0, spread.Low), spread.High, CoverageFactor.Coverage);
+        }
+        else if (settings.WithIntervals)
+        {
+            new BenchIntervals(inputs, joined, settings).FillShorted(shorted, intervals);
+        }
+
+        var notes = Notes(mains, bank, healthy, shorted, settings);
+        var numbers = healthy.TransientNumbers;
         var inrush = new Inrush(
-            healthy.Transient.PeakAmps,
-            healthy.Transient.RmsAmps(0, 1 / mains.Hertz),
-            healthy.Transient.SettleSeconds(steady.Amps),
-            healthy.Transient.RmsAmps(0, settings.MeterWindowSeconds));
+            numbers[TransientEvaluator.Peak],
+            numbers[TransientEvaluator.FirstCycle],
+            healthy.Exists ? numbers[TransientEvaluator.Settle] : double.NaN,
+            settings.Meter.Display(numbers[TransientEvaluator.FirstReading]));
+        var point = healthy.Point;
+        var bankVolts = healthy.Exists ? healthy.Steady[SteadyEvaluator.BankVolts] : double.NaN;
         return new BenchPrediction(
             mains,
             new BankSummary(bank.Text, bank.ColdOhms, bank.RatedWatts),
             new UnitSummary(unit.Text),
-            new SteadyState(true, steady.Amps, healthy.BankVolts, steady.Volts, steady.Watts, steady.PowerFactor, healthy.Lamps, note),
+            new SteadyState(
+                healthy.Exists, point.Amps, bankVolts, point.Volts, point.Watts, point.PowerFactor, healthy.Lamps(), notes.Count == 0 ? null : string.Join(" ", notes)),
             inrush,
-            new ShortedState(shortedPoint.Amps, shorted.Transient.PeakAmps, shorted.Lamps),
-            Band(mains, bank, unit, settings, steady.Amps),
-            shortedPoint.Amps / steady.Amps,
-            bank.Notes);
+            new ShortedState(shorted.Point.Amps, shorted.TransientNumbers[TransientEvaluator.Peak], shorted.Lamps()),
+            band,
+            shorted.Point.Amps / point.Amps,
+            notes,
+            intervals);
     }
 
-    private static Worked Work(Mains mains, Bank bank, Unit unit, PredictionSettings settings, out UnitPoint steady)
+    private static List<string> Notes(Mains mains, Bank bank, BenchState healthy, BenchState shorted, PredictionSettings settings)
     {
-        var solver = new SteadySolver(bank, unit.NewResponse(mains), settings.SourceOhms);
-        steady = solver.Solve(mains.Volts);
-        var willGlow = new bool[bank.Lamps.Count];
-        for (var lamp = 0; lamp < willGlow.Length; lamp++)
+        var notes = new List<string>();
+        if (healthy.Note is not null)
         {
-            willGlow[lamp] = solver.Bank.Kelvin(lamp) > TungstenProperties.FirstGlowKelvin;
+            notes.Add(healthy.Note);
         }
 
-        var (phase, _) = SwitchOn.WorstPhase(mains, bank, unit, settings.SourceOhms);
-        var simulation = new CircuitSimulation(mains, bank, unit, phase, sourceOhms: settings.SourceOhms);
-        var transient = SwitchOn.Run(simulation, steady.Amps, willGlow, 2.5 * settings.MeterWindowSeconds, LongestSeconds);
-        var lamps = bank.Lamps.Select((lamp, index) => new LampState(
-            lamp.Name,
-            solver.Bank.LampVolts[index],
-            solver.Bank.LampAmps[index],
-            solver.Bank.LampVolts[index] * solver.Bank.LampAmps[index],
-            solver.Bank.Kelvin(index),
-            lamp.Glow(solver.Bank.Kelvin(index)),
-            transient.FirstGlowSeconds[index])).ToArray();
-        return new Worked(transient, solver.Bank.BankVolts, lamps);
-    }
+        if (healthy.Exists && healthy.Point.Amps > 0)
+        {
+            // The resistor that would show the same reading is what the reading would be taken for.
+            var shown = MeterView.SettledShare(healthy.Point, settings.Meter) * healthy.Point.Amps;
+            var solver = new BankSolver(bank);
+            var likeVolts = mains.Volts - solver.Carry(Math.Min(shown, shorted.Point.Amps));
+            var misled = PredictionNotes.MeterMisled(healthy.Point, settings.Meter, likeVolts * shown);
+            if (misled is not null)
+            {
+                notes.Add(misled);
+            }
+        }
 
-    // A first simple rule: mains, lamps and unit each moved by their one sigma, joined as a root of squares.
-    private static CurrentBand Band(Mains mains, Bank bank, Unit unit, PredictionSettings settings, double steadyAmps)
-    {
-        var solver = new SteadySolver(bank, unit.NewResponse(mains), settings.SourceOhms);
-        var byMains = solver.Solve(mains.Volts * (1 + settings.MainsUncertainty)).Amps - steadyAmps;
-        Array.Fill(solver.Bank.CurrentScale, 1 + settings.LampWattsUncertainty);
-        var byLamps = solver.Solve(mains.Volts).Amps - steadyAmps;
-        var byUnit = steadyAmps * settings.UnitUncertainty;
-        var width = CoverageFactor * Math.Sqrt(byMains * byMains + byLamps * byLamps + byUnit * byUnit);
-        return new CurrentBand(Math.Max(0, steadyAmps - width), steadyAmps + width, 0.95);
+        notes.AddRange(bank.Notes);
+        return notes;
     }
-
-    private sealed record Worked(SwitchOn Transient, double BankVolts, IReadOnlyList<LampState> Lamps);
 }

@@ -14,24 +14,48 @@ internal sealed class SteadySolver
 
     private readonly UnitResponse unit;
     private readonly double sourceOhms;
+    private readonly ConstantPowerSolver? constantPower;
 
     public SteadySolver(Bank bank, UnitResponse unit, double sourceOhms = 0)
     {
         Bank = new BankSolver(bank);
         (this.unit, this.sourceOhms) = (unit, sourceOhms);
+        constantPower = unit is SwitchModeResponse switchMode ? new ConstantPowerSolver(Bank, switchMode, sourceOhms) : null;
     }
 
     /// <summary>The bank at the last answer.</summary>
     public BankSolver Bank { get; }
 
-    /// <summary>The operating point at a supply voltage.</summary>
+    /// <summary>Both operating points and the limit, for a constant-power unit; null for any other.</summary>
+    public ConstantPowerSolver? ConstantPower => constantPower;
+
+    /// <summary>The operating point at a supply voltage; false where there is none, and then the point is NaN all over.</summary>
+    public bool TrySolve(double volts, out UnitPoint point)
+    {
+        if (constantPower is null)
+        {
+            point = Solve(volts);
+            return true;
+        }
+
+        if (constantPower.TryRun(volts, out point))
+        {
+            Bank.Carry(point.Amps);
+            return true;
+        }
+
+        point = UnitPoint.None;
+        return false;
+    }
+
+    /// <summary>The operating point of a unit that has exactly one at any voltage.</summary>
     public UnitPoint Solve(double volts)
     {
         var plain = unit.PlainOhms;
         if (!double.IsNaN(plain))
         {
             var amps = Bank.Feed(volts, plain + sourceOhms);
-            return new UnitPoint(amps, amps * plain, amps * amps * plain);
+            return UnitPoint.Sinusoid(amps, amps * plain, amps * amps * plain);
         }
 
         // The bank's resistance grows with its current, and the unit's current falls with resistance before it: one meeting point.
@@ -39,33 +63,17 @@ internal sealed class SteadySolver
         var shorted = Bank.Feed(volts, sourceOhms);
         var high = Math.Log(Bank.BankVolts / shorted) + 1e-9;
         var low = Math.Log(ColdOhms());
-        var lowExcess = Excess(low, volts, out _);
-        var highExcess = Excess(high, volts, out var point);
-        var lastSide = 0;
-        for (var iteration = 0; iteration < MostIterations && high - low > Tolerance; iteration++)
+        var bracket = new Bracket(low, Excess(low, volts, out _), high, Excess(high, volts, out var point));
+        for (var iteration = 0; iteration < MostIterations && bracket.Width > Tolerance; iteration++)
         {
-            var middle = (low * highExcess - high * lowExcess) / (highExcess - lowExcess);
-            if (!(middle > low && middle < high))
-            {
-                middle = 0.5 * (low + high);
-            }
-
+            var middle = bracket.Next;
             var excess = Excess(middle, volts, out point);
             if (Math.Abs(excess) < Tolerance)
             {
-                return point;
+                break;
             }
 
-            if (excess > 0)
-            {
-                highExcess *= lastSide > 0 ? 0.5 : 1;
-                (low, lowExcess, lastSide) = (middle, excess, 1);
-            }
-            else
-            {
-                lowExcess *= lastSide < 0 ? 0.5 : 1;
-                (high, highExcess, lastSide) = (middle, excess, -1);
-            }
+            bracket.Take(middle, excess);
         }
 
         return point;

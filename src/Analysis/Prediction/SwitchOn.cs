@@ -7,7 +7,6 @@ namespace Lampwarden.Analysis.Prediction;
 /// <summary>A cold switch-on as simulated: the current at every step and each lamp's temperature once a quarter cycle.</summary>
 public sealed class SwitchOn
 {
-    private const int KelvinEvery = CircuitSimulation.StepsPerCycle / 4;
     private const double SettledShare = 0.10;
 
     // Ends once a cycle's RMS has stayed this near the steady value for this long.
@@ -17,9 +16,11 @@ public sealed class SwitchOn
     private readonly List<double> amps = [];
     private readonly List<double>[] kelvin;
 
-    private SwitchOn(int lamps, double stepSeconds)
+    private readonly int perCycle;
+
+    private SwitchOn(int lamps, CircuitSimulation simulation)
     {
-        StepSeconds = stepSeconds;
+        (StepSeconds, perCycle) = (simulation.StepSeconds, simulation.StepsPerCycle);
         kelvin = [.. Enumerable.Range(0, lamps).Select(_ => new List<double>())];
         FirstGlowSeconds = [.. Enumerable.Repeat(double.NaN, lamps)];
     }
@@ -29,6 +30,8 @@ public sealed class SwitchOn
 
     /// <summary>Time between two values of <see cref="Kelvin"/>.</summary>
     public double KelvinSeconds => StepSeconds * KelvinEvery;
+
+    private int KelvinEvery => perCycle / 4;
 
     /// <summary>Instantaneous line current, beginning with the instant of switching.</summary>
     public IReadOnlyList<double> Amps => amps;
@@ -50,7 +53,7 @@ public sealed class SwitchOn
     /// <param name="mostSeconds">To end at the latest.</param>
     public static SwitchOn Run(CircuitSimulation simulation, double steadyAmps, ReadOnlySpan<bool> willGlow, double leastSeconds, double mostSeconds)
     {
-        var run = new SwitchOn(simulation.FilamentKelvin.Length, simulation.StepSeconds);
+        var run = new SwitchOn(simulation.FilamentKelvin.Length, simulation);
         run.Note(simulation);
         var squares = 0.0;
         var quiet = 0.0;
@@ -59,11 +62,11 @@ public sealed class SwitchOn
             simulation.Step();
             run.Note(simulation);
             squares += run.amps[^1] * run.amps[^1];
-            if (run.amps.Count % CircuitSimulation.StepsPerCycle == 1)
+            if (run.amps.Count % run.perCycle == 1)
             {
-                var rms = Math.Sqrt(squares / CircuitSimulation.StepsPerCycle);
+                var rms = Math.Sqrt(squares / run.perCycle);
                 squares = 0;
-                var cycle = run.StepSeconds * CircuitSimulation.StepsPerCycle;
+                var cycle = run.StepSeconds * run.perCycle;
                 quiet = Math.Abs(rms / steadyAmps - 1) < QuietShare ? quiet + cycle : 0;
                 if (quiet >= QuietSeconds && simulation.Seconds >= leastSeconds && run.AllGlow(willGlow))
                 {
@@ -84,7 +87,7 @@ public sealed class SwitchOn
         {
             simulation.Reset(phase);
             var highest = Math.Abs(simulation.LineAmps);
-            for (var step = 0; step < CircuitSimulation.StepsPerCycle; step++)
+            for (var step = 0; step < simulation.StepsPerCycle; step++)
             {
                 simulation.Step();
                 highest = Math.Max(highest, Math.Abs(simulation.LineAmps));
@@ -121,8 +124,7 @@ public sealed class SwitchOn
     /// <summary>From when on the RMS current of one cycle, counted at its middle, stays within 10 % of the steady one.</summary>
     public double SettleSeconds(double steadyAmps)
     {
-        const int Cycle = CircuitSimulation.StepsPerCycle;
-        if (!(steadyAmps > 0) || amps.Count <= Cycle)
+        if (!(steadyAmps > 0) || amps.Count <= perCycle)
         {
             return double.NaN;
         }
@@ -131,14 +133,14 @@ public sealed class SwitchOn
         var last = -1;
         for (var index = 1; index < amps.Count; index++)
         {
-            sum += amps[index] * amps[index] - (index > Cycle ? amps[index - Cycle] * amps[index - Cycle] : 0);
-            if (index >= Cycle && Math.Abs(Math.Sqrt(Math.Max(0, sum) / Cycle) / steadyAmps - 1) > SettledShare)
+            sum += amps[index] * amps[index] - (index > perCycle ? amps[index - perCycle] * amps[index - perCycle] : 0);
+            if (index >= perCycle && Math.Abs(Math.Sqrt(Math.Max(0, sum) / perCycle) / steadyAmps - 1) > SettledShare)
             {
                 last = index;
             }
         }
 
-        return last < 0 ? 0 : last >= amps.Count - 1 ? double.NaN : (last + 1 - Cycle / 2) * StepSeconds;
+        return last < 0 ? 0 : last >= amps.Count - 1 ? double.NaN : (last + 1 - perCycle / 2) * StepSeconds;
     }
 
     private void Note(CircuitSimulation simulation)

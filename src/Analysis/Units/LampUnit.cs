@@ -18,6 +18,10 @@ public sealed class LampUnit : Unit
     /// <summary>The lamp.</summary>
     public Lamp Lamp { get; }
 
+    internal override Unit Scaled(double factor) => new LampUnit(Text, Lamp.With(Lamp.Filament! with { Watts = Lamp.Filament.Watts * factor }));
+
+    internal override double DefaultUncertainty => Lamp.Tolerance.WattsShare;
+
     internal override UnitDynamics NewDynamics(Mains mains) => new Dynamics(Lamp.Filament!);
 
     internal override UnitResponse NewResponse(Mains mains) => new Response(Lamp);
@@ -47,7 +51,7 @@ public sealed class LampUnit : Unit
         public override UnitPoint At(double volts, double seriesOhms)
         {
             var amps = solver.Feed(volts, seriesOhms);
-            return new UnitPoint(amps, solver.BankVolts, amps * solver.BankVolts);
+            return UnitPoint.Sinusoid(amps, solver.BankVolts, amps * solver.BankVolts);
         }
     }
 }

@@ -22,6 +22,10 @@ public sealed class ResistorUnit : Unit
     /// <summary>Resistance in ohms.</summary>
     public double Ohms { get; }
 
+    internal override Unit Scaled(double factor) => Ohms is 0 or OpenOhms ? this : new ResistorUnit(Text, Ohms / factor);
+
+    internal override double DefaultUncertainty => Ohms is 0 or OpenOhms ? 0 : 0.01;
+
     internal override UnitDynamics NewDynamics(Mains mains) => new Dynamics(Ohms);
 
     internal override UnitResponse NewResponse(Mains mains) => new Response(Ohms);
@@ -38,7 +42,7 @@ public sealed class ResistorUnit : Unit
         public override UnitPoint At(double volts, double seriesOhms)
         {
             var amps = volts / (seriesOhms + ohms);
-            return new UnitPoint(amps, amps * ohms, amps * amps * ohms);
+            return UnitPoint.Sinusoid(amps, amps * ohms, amps * amps * ohms);
         }
     }
 }

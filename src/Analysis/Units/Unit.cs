@@ -17,6 +17,12 @@ public abstract class Unit
     /// <exception cref="TextFormatException">The text is no unit.</exception>
     public static Unit Parse(string text, Mains mains) => new UnitParser(text, mains).Parse();
 
+    /// <summary>The unit with its plate's watts times a factor: for uncertainties.</summary>
+    internal abstract Unit Scaled(double factor);
+
+    /// <summary>How well the plate's watts are known where nobody says better: relative, one sigma.</summary>
+    internal virtual double DefaultUncertainty => 0.10;
+
     /// <summary>A model for time stepping.</summary>
     internal abstract UnitDynamics NewDynamics(Mains mains);
 

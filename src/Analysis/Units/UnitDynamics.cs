@@ -6,6 +6,11 @@ internal abstract class UnitDynamics
     /// <summary>How many states: a filament temperature, a reservoir's volts, a flux, a speed.</summary>
     public virtual int StateCount => 0;
 
+    /// <summary>
+    /// Shortest time constant in seconds with this much resistance before the unit: the simulation takes shorter steps for a quick unit.
+    /// </summary>
+    public virtual double FastestSeconds(double leastOhms, double mostOhms) => double.PositiveInfinity;
+
     /// <summary>States of a unit that has been off for long.</summary>
     public virtual void Rest(Span<double> state)
     {
