@@ -18,6 +18,19 @@ internal sealed class BenchIntervals(BenchInputs inputs, BenchInputs joined, Pre
     /// <param name="intervals">Where they go, by JSON path.</param>
     public Interval Fill(BenchState healthy, BenchState shorted, double shownShare, IDictionary<string, Interval>? intervals)
     {
+        var reading = FillSteady(healthy, shorted, shownShare, intervals);
+        if (intervals is not null)
+        {
+            FillTransient(healthy, intervals);
+            FillPeak(shorted, intervals);
+        }
+
+        return reading;
+    }
+
+    /// <summary>The settled part of <see cref="Fill"/>.</summary>
+    public Interval FillSteady(BenchState healthy, BenchState shorted, double shownShare, IDictionary<string, Interval>? intervals)
+    {
         var nominal = healthy.Steady;
         var both = Spread(inputs, values => [.. healthy.Evaluator!.At(values), .. shorted.Evaluator!.At(values)], [.. nominal, .. shorted.Steady], skipTransient: true);
         var reading = Reading(both[SteadyEvaluator.Amps], nominal[SteadyEvaluator.Amps], shownShare);
@@ -26,16 +39,14 @@ internal sealed class BenchIntervals(BenchInputs inputs, BenchInputs joined, Pre
             return reading;
         }
 
-        intervals["steady.lineAmps"] = both[SteadyEvaluator.Amps].Interval.Within(0, double.MaxValue);
-        intervals["steady.bankVolts"] = both[SteadyEvaluator.BankVolts].Interval.Within(0, double.MaxValue);
+        intervals["steady.lineAmps"] = both[SteadyEvaluator.Amps].Interval;
+        intervals["steady.bankVolts"] = both[SteadyEvaluator.BankVolts].Interval;
         intervals["steady.unitVolts"] = both[SteadyEvaluator.UnitVolts].Interval.Within(0, double.MaxValue);
         intervals["steady.unitWatts"] = both[SteadyEvaluator.UnitWatts].Interval.Within(0, double.MaxValue);
         intervals["steady.powerFactor"] = both[SteadyEvaluator.PowerFactor].Interval.Within(0, 1);
         FillLamps("steady", both, 0, healthy, intervals);
         FillShortedSteady(both, nominal.Length, shorted, intervals);
         FillContrast(healthy, shorted, intervals);
-        FillTransient(healthy, intervals);
-        FillPeak(shorted, intervals);
         return reading;
     }
 
@@ -131,7 +142,8 @@ internal sealed class BenchIntervals(BenchInputs inputs, BenchInputs joined, Pre
         }
     }
 
-    private void FillPeak(BenchState shorted, IDictionary<string, Interval> intervals) =>
+    /// <summary>The peak of the shorted bank.</summary>
+    public void FillPeak(BenchState shorted, IDictionary<string, Interval> intervals) =>
         intervals["shorted.peakAmps"] = Spread(joined, values => [shorted.Transients.PeakAmps(values)], [shorted.TransientNumbers[TransientEvaluator.Peak]], skipTransient: false)[0].Interval;
 
     private static double ColdOhms(BankPart part, double kelvin) => part switch

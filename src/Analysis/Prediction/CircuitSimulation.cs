@@ -13,8 +13,6 @@ public sealed partial class CircuitSimulation
     /// <summary>Least steps in one mains cycle: RMS currents are then within 0.01 % of a finer division (docs/model.md).</summary>
     public const int LeastStepsPerCycle = 100;
 
-    // Runge-Kutta of fourth order is stable to 2.8 time constants; half of that keeps it exact too.
-    private const double StepsPerTimeConstant = 0.7;
     private const int MostStepsPerCycle = 5000;
 
     private const double OpenSiemens = 1e-12;
@@ -225,8 +223,7 @@ public sealed partial class CircuitSimulation
 
         response = null;
         isFresh = false;
-        var fastest = unit.FastestSeconds(leastOhms, mostOhms);
-        var multiple = Math.Ceiling(StepsPerTimeConstant / (fastest * mains.Hertz * LeastStepsPerCycle));
+        var multiple = Math.Ceiling(1 / (unit.LongestStepSeconds(leastOhms, mostOhms) * mains.Hertz * LeastStepsPerCycle));
         var perCycle = (int)Math.Clamp(multiple * LeastStepsPerCycle, LeastStepsPerCycle, MostStepsPerCycle);
         if (perCycle == StepsPerCycle)
         {

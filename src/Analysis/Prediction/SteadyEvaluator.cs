@@ -5,7 +5,7 @@ namespace Lampwarden.Analysis.Prediction;
 
 /// <summary>
 /// The steady state of a bench as a vector of numbers, for values of its inputs near the nominal ones: line current, bank volts, unit volts,
-/// unit watts, power factor, then five numbers of each lamp. Quick: the bank is solved exactly, the unit by its <see cref="LocalUnit"/>.
+/// unit watts, power factor, then of each lamp volts, amperes, watts, kelvin and glow. Quick: the bank is solved exactly, the unit by its <see cref="LocalUnit"/>.
 /// </summary>
 internal sealed class SteadyEvaluator
 {

@@ -10,7 +10,8 @@ internal struct Propagation
     private readonly double nominal;
     private readonly bool isLog;
     private double mean;
-    private double variance;
+    private double slopeSquares;
+    private double bends;
     private double thirdMoment;
     private double rectangleFourth;
 
@@ -44,26 +45,30 @@ internal struct Propagation
         var offset = (input.Nominal - input.Mean) / input.Sigma;
         var bend = Math.Abs(offset * offset - 1) > 0.1 ? (nominal - average - slope * offset) / (offset * offset - 1) : 0;
         mean += average - nominal;
-        var kurtosis = input.Shape == InputShape.Normal ? 3 : 1.8;
-        variance += slope * slope + bend * bend * (kurtosis - 1);
-        thirdMoment += 3 * slope * slope * bend * (kurtosis - 1);
+        slopeSquares += slope * slope;
+        bends += bend;
+        thirdMoment += 6 * slope * slope * bend;
         rectangleFourth += input.Shape == InputShape.Rectangular ? Math.Pow(slope, 4) : 0;
     }
 
     /// <summary>Combined standard uncertainty: of the logarithm, so relative, for a positive quantity.</summary>
-    public readonly double Sigma => Math.Sqrt(variance);
+    public readonly double Sigma => Math.Sqrt(Variance);
+
+    // The mixed second derivatives are not worked out. They are taken as if the output bent over one combination of all inputs, as it does
+    // over the volts of a lamp: then the bends add, and not their squares.
+    private readonly double Variance => slopeSquares + 2 * bends * bends;
 
     /// <summary>The 95 % interval.</summary>
     public readonly Interval Interval
     {
         get
         {
-            if (double.IsNaN(mean) || double.IsNaN(variance))
+            if (double.IsNaN(mean) || double.IsNaN(Variance))
             {
                 return Interval.Unknown;
             }
 
-            if (variance <= 0)
+            if (Variance <= 0)
             {
                 return Back(mean, mean);
             }
@@ -72,7 +77,7 @@ internal struct Propagation
             var factor = CoverageFactor.Of(Math.Pow(rectangleFourth, 0.25) / sigma);
 
             // The skew moves both ends the same way (first term of Cornish and Fisher).
-            var skew = Math.Clamp(thirdMoment / (variance * sigma), -1, 1);
+            var skew = Math.Clamp(thirdMoment / (sigma * sigma * sigma), -1, 1);
             var shift = mean + skew * (factor * factor - 1) / 6 * sigma;
             return Back(shift - factor * sigma, shift + factor * sigma);
         }

@@ -94,8 +94,8 @@ public sealed class MotorUnit : Unit
         // Stator current, rotor current, speed from 0 to 1.
         public override int StateCount => 3;
 
-        public override double FastestSeconds(double leastOhms, double mostOhms) =>
-            0.5 * Math.Min(StatorHenries / (mostOhms + unit.StatorOhms), RotorHenries * LeastSlip / unit.RotorOhms);
+        public override double LongestStepSeconds(double leastOhms, double mostOhms) =>
+            0.7 * Math.Min(StatorHenries / (mostOhms + unit.StatorOhms), RotorHenries * LeastSlip / unit.RotorOhms);
 
         public override void Rest(Span<double> state) => state.Clear();
 

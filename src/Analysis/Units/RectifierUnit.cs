@@ -75,7 +75,7 @@ public sealed class RectifierUnit : Unit
     {
         public override int StateCount => 1;
 
-        public override double FastestSeconds(double leastOhms, double mostOhms) => (leastOhms + reservoir.InnerOhms) * reservoir.Farads;
+        public override double LongestStepSeconds(double leastOhms, double mostOhms) => reservoir.LongestStepSeconds(leastOhms);
 
         public override void Rest(Span<double> state) => state[0] = 0;
 

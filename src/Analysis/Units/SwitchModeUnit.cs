@@ -63,7 +63,7 @@ public sealed class SwitchModeUnit : Unit
         // The capacitor's volts, and 1 while the converter runs.
         public override int StateCount => 2;
 
-        public override double FastestSeconds(double leastOhms, double mostOhms) => (leastOhms + unit.Reservoir.InnerOhms) * unit.Reservoir.Farads;
+        public override double LongestStepSeconds(double leastOhms, double mostOhms) => unit.Reservoir.LongestStepSeconds(leastOhms);
 
         public override void Rest(Span<double> state) => state.Clear();
 
