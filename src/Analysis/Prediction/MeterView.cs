@@ -9,7 +9,7 @@ internal static class MeterView
     private const int Alignments = 16;
 
     /// <summary>The reading of a window: steps from first to first + count, ends included at half weight.</summary>
-    public static double Window(IReadOnlyList<double> amps, int first, int count, MeterTraits meter)
+    public static double Window(IReadOnlyList<double> amps, int first, int count, PredictedMeter meter)
     {
         double squares = 0, sum = 0;
         for (var index = 0; index <= count; index++)
@@ -35,7 +35,7 @@ internal static class MeterView
     }
 
     /// <summary>Readings one after the other, the first window beginning with the switch-on; for a converter, its output at those times.</summary>
-    public static IReadOnlyList<(double Seconds, double Amps)> Readings(IReadOnlyList<double> amps, double stepSeconds, MeterTraits meter, double delaySeconds = 0)
+    public static IReadOnlyList<(double Seconds, double Amps)> Readings(IReadOnlyList<double> amps, double stepSeconds, PredictedMeter meter, double delaySeconds = 0)
     {
         var readings = new List<(double, double)>();
         var count = Math.Max(1, (int)Math.Round(meter.WindowSeconds / stepSeconds));
@@ -76,7 +76,7 @@ internal static class MeterView
     /// The first reading with the window aligned to the switch-on, and the least value that the larger of the first two readings can take
     /// when it is not.
     /// </summary>
-    public static (double Aligned, double Least) First(SwitchOn run, MeterTraits meter)
+    public static (double Aligned, double Least) First(SwitchOn run, PredictedMeter meter)
     {
         var exact = meter with { CountSize = 0, RangeAmps = double.PositiveInfinity };
         var aligned = Readings(run.Amps, run.StepSeconds, exact);
@@ -104,7 +104,7 @@ internal static class MeterView
     }
 
     /// <summary>What the meter shows of a settled current, relative to its true RMS.</summary>
-    public static double SettledShare(in Units.UnitPoint point, MeterTraits meter)
+    public static double SettledShare(in Units.UnitPoint point, PredictedMeter meter)
     {
         if (!(point.Amps > 0))
         {

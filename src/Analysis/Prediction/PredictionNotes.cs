@@ -42,7 +42,7 @@ internal static class PredictionNotes
         $"The motor does not get going behind this bank: it stands and hums at {Amps(amps)}. Leave it so for seconds only, and take a bigger bank.");
 
     /// <summary>A current that an AC-coupled or mean-responding meter shows wrongly.</summary>
-    public static string? MeterMisled(in UnitPoint point, MeterTraits meter, double healthyLikeWatts)
+    public static string? MeterMisled(in UnitPoint point, PredictedMeter meter, double healthyLikeWatts)
     {
         var shown = MeterView.SettledShare(point, meter) * point.Amps;
         var direct = point.DirectAmps / point.Amps;

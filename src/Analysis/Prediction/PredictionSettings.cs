@@ -4,7 +4,7 @@ namespace Lampwarden.Analysis.Prediction;
 public sealed record PredictionSettings
 {
     /// <summary>The meter whose readings are predicted.</summary>
-    public MeterTraits Meter { get; init; } = new();
+    public PredictedMeter Meter { get; init; } = new();
 
     /// <summary>Length of the meter's window in seconds, above 0: the same value as in <see cref="Meter"/>.</summary>
     public double MeterWindowSeconds

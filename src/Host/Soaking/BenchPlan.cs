@@ -64,7 +64,7 @@ public sealed class BenchPlan
         var bank = Bank.Parse(options.Bank, mains, inventory);
         var unit = Unit.Parse(options.Unit, mains);
         var line = options.Meters.Single(meter => meter.Quantity == Quantity.LineCurrent);
-        var prediction = Predictor.Predict(mains, bank, unit, new PredictionSettings { MeterWindowSeconds = line.WindowSeconds });
+        var prediction = Predictor.Predict(mains, bank, unit, new PredictionSettings { MeterWindowSeconds = line.WindowSeconds, WithIntervals = false });
         var settings = new WatchSettings
         {
             ReadingsPerSecond = Math.Clamp(line.ReadingsPerSecond, 0.2, 100),

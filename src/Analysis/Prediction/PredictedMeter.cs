@@ -24,7 +24,7 @@ public enum MeterResponse
 }
 
 /// <summary>What a meter makes of the line current.</summary>
-public sealed record MeterTraits
+public sealed record PredictedMeter
 {
     /// <summary>Length of a window in seconds; for a first-order converter its time constant. Above 0.</summary>
     public double WindowSeconds { get; init; } = 0.2;
