@@ -37,7 +37,7 @@ internal sealed class BenchInstruments(BenchPlan plan)
         var bank = _bank.Volts(amps);
         var ampsSigma = amps * MeterShare(plan.LineMeter, amps);
         // A lamp of p more watts takes about p more current at the same volts: the same as reading p less current.
-        var bankSigma = _bank.SlopeOhms * Math.Sqrt(ampsSigma * ampsSigma + Square(amps * LampTolerance.GasNameplate.WattsShare));
+        var bankSigma = _bank.SlopeOhms * Math.Sqrt(ampsSigma * ampsSigma + Square(amps * Analysis.Lamps.LampTolerance.GasNameplate.WattsShare));
         return new NowDocument(
             plan.Name, run, seen.Seconds, sentence, amps, false, mainsNow,
             new BankNow(bank, Math.Max(0, bank - Coverage * bankSigma), bank + Coverage * bankSigma),
