@@ -1,11 +1,19 @@
 using Lampwarden.Benchmarks.Detection;
+using Lampwarden.Benchmarks.Recording;
 
 // Each subject is one word: dotnet run -c Release --project tests/Benchmarks -- SUBJECT [options]
 switch (args.FirstOrDefault())
 {
     case "detection":
         return DetectionCommand.Run(args[1..]);
+    case "store":
+        return await StoreCommand.RunAsync();
+    case "kill-store":
+        return await KillStoreCommand.RunAsync(args[1..]);
+    case "forward":
+        return await ForwardCommand.RunAsync(args[1..]);
     default:
         Console.Error.WriteLine("Name a subject: detection [--corpus ID] [--runs N] [--nominal N] [--shifted] [--rate R] [--no-mains] [--no-oracles] [--no-baselines] [--only TEXT] [--threads N] [--verbose]");
+        Console.Error.WriteLine("  or: store; kill-store [--times 200]; forward --url URL [--api v1|v2] [--bucket NAME] [--hours H] [--rate R]");
         return 2;
 }

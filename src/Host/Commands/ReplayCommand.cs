@@ -1,14 +1,17 @@
 using System.CommandLine;
 using Lampwarden.Analysis.Watching;
 using Lampwarden.Host.Configuration;
+using Lampwarden.Host.Recording;
+using Lampwarden.Host.Recording.Exchange;
 using Lampwarden.Host.Soaking;
 
 namespace Lampwarden.Host.Commands;
 
-/// <summary><c>replay FILE.csv</c>: a recorded series through the same watch, offline.</summary>
+/// <summary><c>replay FILE.csv</c> or <c>replay RUN</c>: a recorded series or a stored run through the same watch, offline.</summary>
 internal sealed class ReplayCommand : CliCommand
 {
-    private readonly Argument<string> _file = new("FILE") { Description = "CSV with the header seconds,amps or seconds,amps,volts" };
+    private readonly Argument<string> _file = new("FILE") { Description = "CSV with the header seconds,amps or seconds,amps,volts; or the id of a stored run" };
+    private readonly Option<string?> _record = CommonOptions.Record();
     private readonly Option<string?> _config = new("--config") { Description = "Configuration with the bench the series came from", HelpName = "F" };
     private readonly Option<string?> _bench = new("--bench") { Description = "Which bench of the configuration", HelpName = "NAME" };
 
@@ -18,12 +21,13 @@ internal sealed class ReplayCommand : CliCommand
         Add(_file);
         Add(_config);
         Add(_bench);
+        Add(_record);
     }
 
     protected override Task<int> RunAsync(ParseResult parsed, Terminal terminal, CancellationToken cancellation)
     {
-        var series = SeriesFile.Read(parsed.GetValue(_file)!);
-        var settings = Settings(parsed.GetValue(_config), parsed.GetValue(_bench), series);
+        var (series, own) = Read(parsed);
+        var settings = Settings(parsed.GetValue(_config), parsed.GetValue(_bench), series, own);
         var ledger = new SoakLedger(settings);
         foreach (var observation in series)
         {
@@ -49,7 +53,21 @@ internal sealed class ReplayCommand : CliCommand
         return Task.FromResult(document.Verdict == Verdict.Failed ? ExitCode.No : ExitCode.Done);
     }
 
-    private static WatchSettings Settings(string? config, string? bench, IReadOnlyList<Observation> series)
+    // A stored run brings its own bench along; a configuration named beside it replaces that.
+    private (IReadOnlyList<Observation> Series, BenchOptions? Own) Read(ParseResult parsed)
+    {
+        var name = parsed.GetValue(_file)!;
+        var folder = parsed.GetValue(_record);
+        if (File.Exists(name) || (folder is null && !StoredSeries.IsRunId(name)))
+        {
+            return (SeriesFile.Read(name), null);
+        }
+
+        using var store = SoakStore.Open(RecordFolder.Of(folder, parsed.GetValue(_config) ?? ConfigurationFile.DefaultPath), TimeProvider.System, StoreMode.Review);
+        return (StoredSeries.Read(store, name), StoredSeries.BenchOf(store.Run(name)));
+    }
+
+    private static WatchSettings Settings(string? config, string? bench, IReadOnlyList<Observation> series, BenchOptions? own)
     {
         var mainsMeasured = series.Any(observation => !double.IsNaN(observation.MainsVolts));
         if (config is null)
@@ -57,6 +75,11 @@ internal sealed class ReplayCommand : CliCommand
             if (bench is not null)
             {
                 throw new BadInputException("--bench names a bench of a configuration; give --config F too.");
+            }
+
+            if (own is not null)
+            {
+                return BenchPlan.From(own, Inventory.Of([])).WatchSettings;
             }
 
             // Without a bench nothing is predicted: the watch goes by the series alone.

@@ -51,7 +51,8 @@ internal sealed class WatchCommand : CliCommand
             plans, parsed.GetValue(_record) ?? options.Recording.Folder, TimeProvider.System, [], logToConsole: true, started: null,
             address is null ? null : new PageOrder(address, inventory, StaysOpen: true, MayFail: false, terminal.Prose),
             new AttendanceOrder(options, parsed.GetValue(_config)!),
-            ending.Token);
+            ending.Token,
+            options.Recording.Influx);
         Finish(terminal, documents);
         return cancellation.IsCancellationRequested ? ExitCode.Interrupted : Answer(documents, plans.Count);
     }

@@ -25,6 +25,9 @@ public sealed class BenchOptions
     /// <summary>What the technician calls the unit itself: a job or a serial number; kept with the run.</summary>
     public string? UnitLabel { get; set; }
 
+    /// <summary>The unit's model. A unit whose model has a reference ('reference' command) is held to that one's narrower band; null for none.</summary>
+    public string? UnitModel { get; set; }
+
     /// <summary>The meters; at least one measures lineCurrent, at most one each quantity.</summary>
     public IList<MeterOptions> Meters { get; set; } = [];
 

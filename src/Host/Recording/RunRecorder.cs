@@ -32,7 +32,15 @@ public sealed class RunRecorder
     /// <param name="reason">Kebab-case, such as no-answer.</param>
     /// <param name="detail">What was seen; that of a gap's first miss is kept.</param>
     public bool AppendMissed(double seconds, string reason, string? detail = null) =>
-        Add(seconds, batch => batch.AddMissed(_run, seconds, reason, detail), important: false);
+        AppendMissed(new LineReading(seconds, double.NaN), reason, detail);
+
+    /// <summary>As above, where the mains was read although the line current was not.</summary>
+    /// <param name="missed">Its amps are NaN.</param>
+    public bool AppendMissed(in LineReading missed, string reason, string? detail = null)
+    {
+        var kept = missed;
+        return Add(kept.Seconds, batch => batch.AddMissed(_run, kept, reason, detail), important: false);
+    }
 
     /// <summary>Appends a step in the life of a finding.</summary>
     public bool AppendFinding(double seconds, FindingChange change) =>

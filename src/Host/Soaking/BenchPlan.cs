@@ -5,6 +5,7 @@ using Lampwarden.Analysis.Prediction;
 using Lampwarden.Analysis.Units;
 using Lampwarden.Analysis.Watching;
 using Lampwarden.Host.Configuration;
+using Lampwarden.Host.Reporting;
 
 namespace Lampwarden.Host.Soaking;
 
@@ -77,6 +78,15 @@ public sealed class BenchPlan
         };
         return new BenchPlan(options, mains, bank, unit, prediction, settings);
     }
+
+    /// <summary>The same bench, its unit held to the reference of its model.</summary>
+    /// <param name="band">Null leaves everything as it is.</param>
+    public BenchPlan HeldTo(ReferenceBand? band) => band is null || WatchSettings.Expectation is not { } expected
+        ? this
+        : new BenchPlan(Options, Mains, Bank, Unit, Prediction, WatchSettings with
+        {
+            Expectation = expected with { SteadyAmps = band.SteadyAmps, BandLowAmps = band.LowAmps, BandHighAmps = band.HighAmps },
+        });
 
     private static Expectation? ExpectationOf(Mains mains, Bank bank, Unit unit, BenchPrediction prediction, double? expectedAmps)
     {

@@ -5,6 +5,7 @@ using Lampwarden.Analysis.Watching;
 using Lampwarden.Host.Alerting;
 using Lampwarden.Host.Commands;
 using Lampwarden.Host.Recording;
+using Lampwarden.Host.Reporting;
 
 namespace Lampwarden.Host.Soaking;
 
@@ -37,6 +38,11 @@ public sealed class Soak
     /// <param name="bringUp">Where the bank is switched in lamp by lamp: the steps; the last is the plan's own bank.</param>
     public Soak(BenchPlan plan, SoakStore store, SoakSurroundings around, BringUp? bringUp = null)
     {
+        if (plan.Options.UnitModel is { } model)
+        {
+            plan = plan.HeldTo(ReferenceUnits.BandFor(store, model, plan.Bank.Text, plan.Mains.ToString(), plan.Prediction.Steady.LineAmps));
+        }
+
         (_plan, _store, _around, _bringUp) = (plan, store, around, bringUp);
         _ledger = new SoakLedger(bringUp is null ? plan.WatchSettings : plan.WatchSettings with { Expectation = bringUp.Plan.WatchSettings.Expectation });
         _alerts = new AlertBook(plan.Name, around.Rules);
@@ -147,10 +153,11 @@ public sealed class Soak
             return true;
         }
 
-        // The store keeps milliseconds; the watch is given the same, so that a stored run replays bit for bit.
-        var seconds = Math.Round(Math.Max(0, look.ElapsedSeconds - _originSeconds), 3);
-        Observe(new Observation(seconds, look.LineAmps, look.MainsVolts), look);
-        return seconds < _plan.PlannedSeconds;
+        // The store keeps milliseconds and the decimal as sent; the watch is given the same, so that a stored run replays bit for bit.
+        var kept = new LineReading(
+            Math.Max(0, look.ElapsedSeconds - _originSeconds), look.LineAmps, look.AmpsDecimals, look.MainsVolts, look.VoltsDecimals);
+        Observe(kept, look);
+        return kept.Seconds < _plan.PlannedSeconds;
     }
 
     private async Task<bool> BeginIfSwitchedOnAsync(BenchLook look, CancellationToken stop)
@@ -189,15 +196,16 @@ public sealed class Soak
         return true;
     }
 
-    private void Observe(in Observation observation, in BenchLook look)
+    private void Observe(in LineReading kept, in BenchLook look)
     {
+        var observation = new Observation(kept.Seconds, kept.Amps, kept.MainsVolts);
         if (observation.IsGap)
         {
-            _recorder!.AppendMissed(observation.Seconds, look.Reason, look.Detail);
+            _recorder!.AppendMissed(kept, look.Reason, look.Detail);
         }
         else
         {
-            _recorder!.Append(new LineReading(observation.Seconds, observation.LineAmps, look.AmpsDecimals, observation.MainsVolts, look.VoltsDecimals));
+            _recorder!.Append(kept);
         }
 
         if (_bringUp is not null)

@@ -1,6 +1,8 @@
 using Lampwarden.Analysis.Lamps;
 using Lampwarden.Host.Alerting;
+using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Recording;
+using Lampwarden.Host.Recording.Forwarding;
 using Lampwarden.Host.Unattended;
 using Lampwarden.Host.Web;
 using Lampwarden.Host.Web.Live;
@@ -22,6 +24,7 @@ public static class SoakHost
     /// <param name="page">Serves the page; null for none.</param>
     /// <param name="attended">How people are told, and who notices when the service dies; null for the log alone.</param>
     /// <param name="stop">Ends every soak; the runs are still closed and stored.</param>
+    /// <param name="influx">A server to forward to; null for none.</param>
     /// <returns>What came of each run that began.</returns>
     /// <exception cref="StoreException">The store cannot be opened or written.</exception>
     public static async Task<IReadOnlyList<SoakDocument>> RunAsync(
@@ -33,9 +36,11 @@ public static class SoakHost
         Action? started,
         PageOrder? page,
         AttendanceOrder? attended,
-        CancellationToken stop)
+        CancellationToken stop,
+        InfluxOptions? influx = null)
     {
         using var store = SoakStore.Open(recordFolder, time);
+        using var forwarder = influx is null ? null : new InfluxForwarder(store, influx, TimeProvider.System);
         using var log = new Serilog.Extensions.Logging.SerilogLoggerFactory(MakeLog(recordFolder, logToConsole), dispose: true);
         var logger = log.CreateLogger("Lampwarden");
         await using var attendance = attended is null ? null : new Attendance(attended, [.. plans.Select(plan => plan.Name)], recordFolder, () => store.Health, logger);
@@ -63,7 +68,18 @@ public static class SoakHost
                 services.GetRequiredService<SoakResults>()));
         }
 
+        if (forwarder is not null)
+        {
+            builder.Services.AddSingleton(forwarder);
+            builder.Services.AddHostedService<InfluxService>();
+        }
+
         using var host = builder.Build();
+        foreach (var run in store.Interrupted)
+        {
+            Log.RunInterrupted(logger, run.Bench, run.Run, run.LengthSeconds);
+        }
+
         await using var served = page is null ? null : await page.OpenAsync(
             new PageParts(board!, host.Services.GetRequiredService<List<BenchDesk>>(), store, log, attendance));
         await host.StartAsync(CancellationToken.None);

@@ -33,9 +33,8 @@ internal sealed class StoreBatch(SqliteConnection connection, int chunkReadings)
         }
     }
 
-    public void AddMissed(ActiveRun run, double seconds, string reason, string? detail)
+    public void AddMissed(ActiveRun run, in LineReading missed, string reason, string? detail)
     {
-        var missed = new LineReading(seconds, double.NaN);
         var from = run.FreshGap?.ToMs ?? (run.Fresh.Count > 0 ? run.Fresh[^1].Milliseconds : run.LastMs);
         run.Fresh.Add(missed);
         Touched.Add(run);
