@@ -6,21 +6,18 @@ namespace Lampwarden.Analysis.Watching;
 /// </summary>
 internal sealed class Unrest
 {
-    private const double MemorySeconds = 6 * 3600;
+    private const double MemorySeconds = 10 * 3600;
     private const double PassedShare = 0.4;
-    private const double LeastPeak = 4;
-    private const double Distance = 1.6;
-    private const double FreeRatio = 9;
-    private const double MostExtra = 25;
+    private const double LeastPeak = 3;
+    private const double Distance = 2;
+    private const double Most = 35;
 
     private double highest;
     private double usual;
     private double lastSeconds;
 
-    /// <summary>What the threshold is to be raised by.</summary>
-    public double Extra => Math.Clamp((usual * Distance) - FreeRatio, 0, MostExtra);
-
-    public double Usual => usual;
+    /// <summary>The distance kept: no threshold may lie below it.</summary>
+    public double Usual => Math.Min(usual * Distance, Most);
 
     public void Observe(double seconds, double ratio)
     {

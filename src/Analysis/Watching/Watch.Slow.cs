@@ -39,7 +39,7 @@ public sealed partial class Watch
 
     private void Maintain(in Observation o, ref int number, bool up)
     {
-        var best = slow.Best(o.Seconds, up);
+        var best = slow.Best(o.Seconds, up ? 1 : -1);
         if (best.Ratio > GoneRatio || (up && stepOffset > 0.01))
         {
             goneSince = double.NaN;
@@ -55,12 +55,15 @@ public sealed partial class Watch
         }
     }
 
-    private static Signature RiseSignature(in SlowCry cry) => cry.Shape switch
-    {
-        FaultShape.QuickGrowth or FaultShape.SlowGrowth => Signature.Runaway,
-        FaultShape.Step => Signature.HardShort,
-        _ => Signature.DevelopingShort,
-    };
+    // A growing fault and a straight one look much alike when first seen: the likelihoods differ by less than one. The cut is where on the
+    // tuning corpora the two kinds of mistake cost the same.
+    private const double GrowthLead = 0.15;
+    private const double StepLead = 2;
+
+    private static Signature RiseSignature(in SlowCry cry) =>
+        cry.StepRatio > Math.Max(cry.RampRatio, cry.GrowthRatio) + StepLead ? Signature.HardShort
+        : cry.GrowthRatio > cry.RampRatio + GrowthLead ? Signature.Runaway
+        : Signature.DevelopingShort;
 
     private static string RiseSentence(in SlowCry cry, in Observation o) =>
         Advice.Developing(cry.Excess * 100, cry.Shape == FaultShape.Ramp ? cry.Size * 100 : double.NaN, o.LineAmps);
@@ -71,6 +74,8 @@ public sealed partial class Watch
         ["excessPercent"] = cry.Excess * 100,
         ["risePercentPerHour"] = cry.Shape == FaultShape.Ramp ? cry.Size * 100 : double.NaN,
         ["logLikelihoodRatio"] = cry.Ratio,
+        ["growthOverRamp"] = cry.GrowthRatio - cry.RampRatio,
+        ["stepOverRamp"] = cry.StepRatio - cry.RampRatio,
     };
 
     private void Forgive(double seconds)

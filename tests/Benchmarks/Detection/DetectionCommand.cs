@@ -164,6 +164,11 @@ public static class DetectionCommand
                 Print(fault, names[d], trials[d]);
             }
 
+            if (request.Verbose)
+            {
+                Console.WriteLine("    " + string.Join(", ", trials[0].GroupBy(trial => trial.Called).Select(group => Invariant($"{group.Key}: {group.Count()}"))) + Invariant($" | growth over ramp 10/25/50/75/90 %: {string.Join(' ', new[] { 0.1, 0.25, 0.5, 0.75, 0.9 }.Select(share => Score.Quantile(trials[0].Select(trial => trial.Aside), share).ToString("0.0", CultureInfo.InvariantCulture)))}"));
+            }
+
             if (fault.Kind != FaultKind.Sag)
             {
                 right += trials[0].Count(trial => double.IsFinite(trial.DelaySeconds) && Score.IsRight(fault.Kind, trial.Called));
@@ -217,7 +222,7 @@ public static class DetectionCommand
         var delay = alarm - run.Truth.OnsetSeconds;
         return double.IsNaN(alarm) || delay > run.Fault.HorizonSeconds
             ? new Trial(double.PositiveInfinity, double.NaN, "", 0, 0)
-            : new Trial(delay, excess, detector.Called, 0, 0);
+            : new Trial(delay, excess, detector.Called, 0, 0) { Aside = (detector as WatchDetector)?.Finding.Evidence.GetValueOrDefault("growthOverRamp") ?? 0 };
     }
 
     private static void Print(Fault fault, string name, Trial[] trials)

@@ -4,7 +4,11 @@ namespace Lampwarden.Benchmarks.Detection;
 
 /// <summary>What one detector made of one faulty run.</summary>
 /// <param name="DelaySeconds">Infinite if missed; NaN if the trial is dropped because of an alarm in the 90 minutes before the onset.</param>
-public readonly record struct Trial(double DelaySeconds, double Excess, string Called, double Oracle, double Cautious);
+public readonly record struct Trial(double DelaySeconds, double Excess, string Called, double Oracle, double Cautious)
+{
+    /// <summary>Evidence kept aside for tuning.</summary>
+    public double Aside { get; init; }
+}
 
 /// <summary>Rules and arithmetic of the score.</summary>
 public static class Score
