@@ -43,7 +43,8 @@ internal sealed class Excursion
     public double Step => meanOut;
 
     /// <summary>Whether the current has stayed out, on one side, for long enough to be called a step.</summary>
-    public bool Stays(double seconds) => outInARow >= LeastReadings && seconds - CrySeconds >= ResolveSeconds && LastInSeconds <= seconds - ResolveSeconds;
+    public bool Stays(double seconds, double patience) =>
+        outInARow >= LeastReadings && seconds - CrySeconds >= patience && LastInSeconds <= seconds - patience;
 
     public double LastInSeconds { get; private set; }
 

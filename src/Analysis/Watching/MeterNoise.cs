@@ -13,6 +13,9 @@ internal sealed class MeterNoise(double readingsPerSecond)
     private const double FirstSd = 0.005;
     private const double MostPole = 0.8;
 
+    // Coarse counts stick to one code for a while, which looks like a filter: beyond this share of the variance the pole is not to be relied on.
+    private const double CoarseShare = 0.25;
+
     private double slow;
     private double previous = double.NaN;
     private double variance = FirstSd * FirstSd;
@@ -23,6 +26,9 @@ internal sealed class MeterNoise(double readingsPerSecond)
 
     /// <summary>Weight of the last reading in the next, 0 to 0.8.</summary>
     public double Pole { get; private set; }
+
+    /// <summary>True where the counts are so coarse that the pole may be an artefact.</summary>
+    public bool PoleDoubtful { get; private set; }
 
     /// <summary>Sd of one reading before the meter's filter, relative.</summary>
     public double WhiteSd { get; private set; } = FirstSd;
@@ -70,6 +76,7 @@ internal sealed class MeterNoise(double readingsPerSecond)
     {
         var rounding = double.IsFinite(leastStep) ? leastStep / amps * (leastStep / amps) / 12 : 0;
         rounding = Math.Min(rounding, 0.8 * variance);
+        PoleDoubtful = rounding > CoarseShare * variance;
         var smooth = Math.Max(variance - rounding, 0.1 * variance);
         var doubt = 1 / Math.Sqrt(count);
         var pole = covariance / smooth;
@@ -93,5 +100,8 @@ internal sealed class MeterNoise(double readingsPerSecond)
         state.Field(ref pole);
         state.Field(ref white);
         (Pole, WhiteSd) = (pole, white);
+        var doubtful = PoleDoubtful;
+        state.Field(ref doubtful);
+        PoleDoubtful = doubtful;
     }
 }

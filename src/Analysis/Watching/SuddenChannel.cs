@@ -65,9 +65,17 @@ internal sealed class SuddenChannel
     /// <param name="sd">Effective sd of one reading, relative.</param>
     /// <param name="extra">Allowance for a restless mains, relative.</param>
     /// <param name="pole">The meter's pole.</param>
-    public SuddenCry Observe(double seconds, double amps, double foretold, double offset, double sd, double extra, double pole)
+    /// <param name="poleDoubtful">Whether the pole may be an artefact of coarse counts.</param>
+    public SuddenCry Observe(double seconds, double amps, double foretold, double offset, double sd, double extra, double pole, bool poleDoubtful)
     {
         Jump = Undo(amps, foretold, pole) - offset;
+        if (poleDoubtful)
+        {
+            // With and without the filter undone, the lesser departure counts.
+            var shown = (amps / foretold) - 1 - offset;
+            Jump = Jump * shown <= 0 ? 0 : Math.Abs(shown) < Math.Abs(Jump) ? shown : Jump;
+        }
+
         strays *= Math.Exp(-(seconds - previousSeconds) / StrayLeakSeconds);
         var fast = previousSeconds;
         (previousAmps, previousForetold, previousSeconds) = (amps, foretold, seconds);

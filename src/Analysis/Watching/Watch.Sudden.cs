@@ -8,6 +8,7 @@ public sealed partial class Watch
     private const double SwitchWarmUpSd = 0.02;
     private const double AnnouncedGraceSeconds = 60;
     private const double QuietSeconds = 90;
+    private const double BurstStaysSeconds = 60;
     private const double FreshJump = 0.3;
     private const double RelearnPauseSeconds = 5;
     private const double BurstMemorySeconds = 1800;
@@ -40,12 +41,14 @@ public sealed partial class Watch
         var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * mains.Unrest);
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);
-        var cry = sudden.Observe(seconds, o.LineAmps, Math.Exp(foretold), excursion.Active ? 0 : offset, sd, extra, noise.Pole);
+        var cry = sudden.Observe(seconds, o.LineAmps, Math.Exp(foretold), excursion.Active ? 0 : offset, sd, extra, noise.Pole, noise.PoleDoubtful);
         if (excursion.Active)
         {
-            if (FollowExcursion(o, sd))
+            // Filter undone, the unit may be back while the meter's own filter still climbs: such a reading teaches nothing.
+            if (FollowExcursion(o, sd) && Math.Abs(log - slow.Foretell(seconds, mains.Filtered)) < 4 * sd
+                && slow.Add(seconds, log, mains.Filtered, noise.WhiteSd))
             {
-                Accept(o, log);
+                WeighSlow(o);
             }
         }
         else if (cry != SuddenCry.Nothing)
@@ -146,8 +149,9 @@ public sealed partial class Watch
             Rename(o, signature);
         }
 
-        var patience = settings.MainsMeasured || Math.Abs(excursion.Step) >= DipShare ? Excursion.ResolveSeconds : DipSeconds;
-        if (!healthy && !excursion.IsOff && excursion.Stays(o.Seconds) && o.Seconds - excursion.CrySeconds >= patience)
+        var patience = excursion.HasReturned ? BurstStaysSeconds
+            : settings.MainsMeasured || Math.Abs(excursion.Step) >= DipShare ? Excursion.ResolveSeconds : DipSeconds;
+        if (!healthy && !excursion.IsOff && excursion.Stays(o.Seconds, patience))
         {
             ConfirmStep(o);
         }
@@ -199,7 +203,7 @@ public sealed partial class Watch
                 RaiseExcursion(o, StepSignature(step));
             }
 
-            if (excursion.Number > 0 && !excursionJoins)
+            if (excursion.Number > 0 && !excursionJoins && !excursion.HasReturned)
             {
                 Rename(o, StepSignature(step));
                 stepFinding = excursion.Number;
