@@ -9,6 +9,7 @@ internal sealed class Excursion
     public const double ResolveSeconds = 7;
     public const double OffShare = 0.25;
     private const int LeastReadings = 5;
+    private const double ArcShare = 0.04;
     private const int EdgesKept = 24;
 
     private readonly double[] edges = new double[EdgesKept]; // moments of return from off, and of going off, alternating
@@ -34,8 +35,10 @@ internal sealed class Excursion
     public double CrySeconds { get; private set; }
     public double LastOutSeconds { get; private set; }
     public bool HasReturned { get; private set; }
-    public int Ups => ups;
-    public int Downs => downs;
+
+    /// <summary>Out to both sides by more than a mains would move: no dip, no step.</summary>
+    public bool LooksLikeArcs => ups > 0 && downs > 0 && ups + downs >= 3;
+
     public bool IsOff => wasOff;
     public int Edges => edgeCount;
 
@@ -117,7 +120,11 @@ internal sealed class Excursion
         early += outInARow <= 3 ? (jump - early) / outInARow : 0;
         meanOut += (jump - meanOut) / Math.Min(outInARow, 20);
         LastOutSeconds = seconds;
-        (ups, downs) = jump > 0 ? (ups + 1, downs) : (ups, downs + 1);
+        if (Math.Abs(jump) > ArcShare)
+        {
+            (ups, downs) = jump > 0 ? (ups + 1, downs) : (ups, downs + 1);
+        }
+
         return false;
     }
 

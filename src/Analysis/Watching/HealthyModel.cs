@@ -12,7 +12,7 @@ internal sealed class HealthyModel
 
     // Design figures of the nuisances (assumed, as wide as a workshop is thought to be): slow warm-up of about 1.75 h, mains wander where unmeasured.
     private const double SlowWarmSd = 0.005, SlowWarmTau = 6300;
-    private const double MainsWanderSd = 0.007, MainsWanderTau = 2400;
+    private const double MainsWanderSd = 0.008, MainsWanderTau = 2400;
 
     private readonly double[] x = new double[Size];
     private readonly double[] p = new double[Size * Size];

@@ -33,7 +33,7 @@ internal sealed class SlowChannel
     {
         this.mainsMeasured = mainsMeasured;
         bank = new HealthyBank(mainsMeasured);
-        suspicions = new Suspicions(scores);
+        suspicions = new Suspicions(scores, mainsMeasured);
     }
 
     public HealthyModel Model => bank.Lead;
@@ -56,7 +56,7 @@ internal sealed class SlowChannel
         DropBlock();
         Armed = false;
         warmSd = warmUpSd;
-        scores.Clear();
+        ClearScores();
     }
 
     /// <summary>Adds one reading that is not in doubt; true if that closed a block.</summary>
@@ -126,7 +126,7 @@ internal sealed class SlowChannel
         scores.Weigh(Model, mains, blockFrom, middle);
         if (bank.Learn(middle, middle - startSeconds, middle - startSeconds < YoungSeconds))
         {
-            scores.Clear();
+            ClearScores();
         }
 
         lastMiddle = middle;
@@ -136,8 +136,17 @@ internal sealed class SlowChannel
     }
 
     /// <summary>Likeliest slow fault at the end of the block just closed; direction 0 if none is likely enough.</summary>
-    public SlowCry Ask(double seconds) => suspicions.Ask(
-        seconds, !Armed ? LearningExtra : AgeSeconds(seconds) < YoungSeconds ? YoungExtra : 0, Armed ? 0 : LearningExcess);
+    public SlowCry Ask(double seconds)
+    {
+        var extra = !Armed ? LearningExtra : AgeSeconds(seconds) < YoungSeconds ? YoungExtra : 0;
+        var cry = suspicions.Ask(seconds, extra, Armed ? 0 : LearningExcess);
+        if (cry.Direction == 0 && suspicions.Tap() is not 0 and var tap)
+        {
+            ShiftLevel(tap);
+        }
+
+        return cry;
+    }
 
     /// <summary>The likeliest fault of one direction, cried or not.</summary>
     public SlowCry Best(double seconds, int sign) => suspicions.Best(seconds, sign);
@@ -148,7 +157,7 @@ internal sealed class SlowChannel
         bank.ShiftLevel(by);
         anchor += by;
         DropBlock();
-        scores.Clear();
+        ClearScores();
     }
 
     /// <summary>Forgets the readings of the open block: some of them turned out to be in doubt.</summary>
@@ -156,6 +165,12 @@ internal sealed class SlowChannel
     {
         sumLog = sumMains = 0;
         count = 0;
+    }
+
+    private void ClearScores()
+    {
+        scores.Clear();
+        suspicions.Forget();
     }
 
     public void Transfer(StateStream state)

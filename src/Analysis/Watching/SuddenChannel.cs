@@ -29,6 +29,9 @@ internal sealed class SuddenChannel
     private const double SureShare = 0.08;
     private const double PairSeconds = 2.5;
 
+    // Beyond this a wrong pole cannot have made the departure up.
+    private const double LargeShare = 0.3;
+
     // Strays: a garbled reading comes 0.1 to 0.3 times an hour, an arc at least 0.2 times a minute. Three within some ten minutes are arcs.
     private const double StrayLeakSeconds = 400, StraysToRaise = 2.4;
 
@@ -65,11 +68,11 @@ internal sealed class SuddenChannel
     /// <param name="sd">Effective sd of one reading, relative.</param>
     /// <param name="extra">Allowance for a restless mains, relative.</param>
     /// <param name="pole">The meter's pole.</param>
-    /// <param name="poleDoubtful">Whether the pole may be an artefact of coarse counts.</param>
+    /// <param name="poleDoubtful">Whether the pole may be an artefact, of coarse counts or of an unmeasured mains' flicker.</param>
     public SuddenCry Observe(double seconds, double amps, double foretold, double offset, double sd, double extra, double pole, bool poleDoubtful)
     {
         Jump = Undo(amps, foretold, pole) - offset;
-        if (poleDoubtful)
+        if (poleDoubtful && Math.Abs(Jump) < LargeShare)
         {
             // With and without the filter undone, the lesser departure counts.
             var shown = (amps / foretold) - 1 - offset;

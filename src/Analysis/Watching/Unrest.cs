@@ -35,6 +35,9 @@ internal sealed class Unrest
         }
     }
 
+    /// <summary>What is suspected now was explained in another way and teaches nothing.</summary>
+    public void Forget() => highest = 0;
+
     public void Transfer(StateStream state)
     {
         state.Field(ref highest);

@@ -14,7 +14,7 @@ public sealed partial class Watch
     private const double BurstMemorySeconds = 1800;
 
     // Without a mains reading a dip of the mains is a dip of the current: smaller steps must outlast it, and a tap change is none of the unit's business.
-    private const double DipShare = 0.16, DipSeconds = 90, TapShare = 0.022;
+    private const double DipShare = 0.2, DipSeconds = 90, TapShare = 0.022;
 
     private int stepFinding;
     private double stepOffset;
@@ -41,7 +41,7 @@ public sealed partial class Watch
         var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * mains.Unrest);
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);
-        var cry = sudden.Observe(seconds, o.LineAmps, Math.Exp(foretold), excursion.Active ? 0 : offset, sd, extra, noise.Pole, noise.PoleDoubtful);
+        var cry = sudden.Observe(seconds, o.LineAmps, Math.Exp(foretold), excursion.Active ? 0 : offset, sd, extra, noise.Pole, noise.PoleDoubtful || !settings.MainsMeasured);
         if (excursion.Active)
         {
             // Filter undone, the unit may be back while the meter's own filter still climbs: such a reading teaches nothing.
@@ -87,7 +87,7 @@ public sealed partial class Watch
         excursionJoins = false;
         excursion.Begin(onset, o.Seconds, sudden.Jump, sd);
         isReturn = stepOffset != 0 && Math.Abs(Math.Log(Math.Max(1 + sudden.Jump, 0.01)) + stepOffset) < 0.3 * Math.Abs(stepOffset);
-        var mayBeMains = !settings.MainsMeasured && Math.Abs(sudden.Jump) < DipShare && cry != SuddenCry.Burst;
+        var mayBeMains = !settings.MainsMeasured && Math.Abs(sudden.Jump) < DipShare;
         if (!isReturn && !mayBeMains)
         {
             RaiseExcursion(o, cry == SuddenCry.Burst ? Signature.Intermittent : StepSignature(sudden.Jump));
@@ -139,7 +139,7 @@ public sealed partial class Watch
         }
 
         var signature = Classify();
-        if (excursion.Number == 0 && !isReturn && signature == Signature.Intermittent && excursion.Ups > 0 && excursion.Downs > 0)
+        if (excursion.Number == 0 && !isReturn && signature == Signature.Intermittent && excursion.LooksLikeArcs)
         {
             RaiseExcursion(o, signature);
         }
@@ -170,7 +170,7 @@ public sealed partial class Watch
             return Signature.Cycling;
         }
 
-        if (excursion.HasReturned || (excursion.Ups > 0 && excursion.Downs > 0))
+        if (excursion.HasReturned || excursion.LooksLikeArcs)
         {
             return Signature.Intermittent;
         }
