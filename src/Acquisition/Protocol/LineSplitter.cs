@@ -33,8 +33,8 @@ internal sealed class LineSplitter
     /// <summary>Bytes received that belong to no finished line yet.</summary>
     public int PendingBytes => _end - _start;
 
-    /// <summary>The bytes of the unfinished line.</summary>
-    public ReadOnlySpan<byte> Pending => _buffer.AsSpan(_start, _end - _start);
+    /// <summary>The unfinished line is one already found too long.</summary>
+    public bool InLineTooLong => _dropping;
 
     /// <summary>At least one more line has ended.</summary>
     public bool HoldsLine => _buffer.AsSpan(_start, _end - _start).IndexOfAnyExcept(_ends) is >= 0 and var text

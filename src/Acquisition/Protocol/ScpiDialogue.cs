@@ -28,6 +28,7 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
     private readonly Wire _wire;
     private CancellationTokenSource _timer = new();
     private volatile Station _asking;
+    private volatile bool _sawLineTooLong;
 
     public ScpiDialogue(Wire wire, Station asking)
     {
@@ -38,8 +39,8 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
     /// <summary>Bytes of a line that has begun and not ended.</summary>
     public int UnfinishedBytes => _wire.UnfinishedBytes;
 
-    /// <summary>A line beyond the limit came since the last command.</summary>
-    public bool SawLineTooLong { get; private set; }
+    /// <summary>A line beyond the limit came since the last command, or is still coming.</summary>
+    public bool SawLineTooLong => _sawLineTooLong || _wire.InLineTooLong;
 
     /// <summary>For whom the next questions are asked: its patience counts, and its book.</summary>
     public void AskFor(Station station) => _asking = station;
@@ -52,7 +53,7 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
             bytes = _commands[command] = Encoding.Latin1.GetBytes(command + _asking.Options.Protocol.CommandEndText);
         }
 
-        SawLineTooLong = false;
+        _sawLineTooLong = false;
         return _wire.SendAsync(bytes, cancellationToken);
     }
 
@@ -135,7 +136,7 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
         health.LineReceived();
         health.LineRefused(GapReason.LineTooLong);
         health.Problem(Wire.TooLong);
-        SawLineTooLong = true;
+        _sawLineTooLong = true;
     }
 
     ValueTask ILineSink.RoomAsync(CancellationToken cancellationToken) => ValueTask.CompletedTask;

@@ -28,6 +28,9 @@ internal sealed class Wire
     /// <summary>Bytes of the unfinished line, for messages; a snapshot.</summary>
     public int UnfinishedBytes => _lines.PendingBytes;
 
+    /// <summary>A line without end is coming in; a snapshot.</summary>
+    public bool InLineTooLong => _lines.InLineTooLong;
+
     /// <summary>Reads until the wire is gone or the token says stop.</summary>
     /// <exception cref="TransportException">The wire is gone.</exception>
     public async Task PumpAsync(ILineSink sink, CancellationToken cancellationToken)
