@@ -56,7 +56,7 @@ public sealed class ProtocolOptions
     public IList<string> ExponentWords { get; set; } = [];
 
     /// <summary>What stands in the value group when the input is beyond the range. A match of the group overload says so too.</summary>
-    public IList<string> OverloadWords { get; set; } = ["OL", "O.L", ".OL", "0L", "0.L", "-OL", "OVER", "OVLD", "OFL", "----"];
+    public IList<string> OverloadWords { get; set; } = ["OL", "O.L", ".OL", "0L", "0.L", "-OL", "OVER", "OVLD", "OFL", "----", "-----"];
 
     /// <summary>Words in the flags group that make a line no reading, such as HOLD: the display stands still.</summary>
     public IList<string> RefuseWords { get; set; } = ["HOLD"];

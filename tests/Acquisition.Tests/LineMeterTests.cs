@@ -34,7 +34,7 @@ public sealed class LineMeterTests
     [InlineData(MeterTrouble.Endless, GapReason.LineTooLong)]
     public async Task ReadAsync_Trouble_GivesGapsAndNoWrongNumberAndPasses(MeterTrouble trouble, GapReason reason)
     {
-        await using var bench = NewBench("words", TestBench.NewTerminal());
+        await using var bench = NewBench("words", TestBench.NewTerminal(), patienceSeconds: 0.1);
         await bench.NextAsync();
 
         bench.Meter.Begin(trouble);
@@ -83,14 +83,14 @@ public sealed class LineMeterTests
         Assert.Equal(2, bench.Session.Health.Openings);
     }
 
-    private static TestBench NewBench(string dialect, IInstrumentPort port)
+    private static TestBench NewBench(string dialect, IInstrumentPort port, double patienceSeconds = 10)
     {
         var example = Examples.Meter(dialect);
         return new TestBench(port, new SimulatedMeterOptions { Dialect = dialect, LinesPerSecond = 50, NoiseCounts = 0 }, options =>
         {
             options.Protocol = example.Protocol;
             options.WindowSeconds = example.WindowSeconds;
-            options.ReplyTimeoutSeconds = 0.1;
+            options.ReplyTimeoutSeconds = patienceSeconds;
         });
     }
 }

@@ -110,6 +110,9 @@ internal sealed class RehearseCommand : CliCommand
             Transport = meter.TransportKind == "tcp"
                 ? new TransportOptions { Kind = "tcp", Host = meter.Place[..colon], Port = meter.Place[(colon + 1)..] }
                 : new TransportOptions { Kind = "serial", Port = meter.Place },
+            Protocol = scenario.Meter.Dialect == "scpi"
+                ? new ProtocolOptions()
+                : new ProtocolOptions { Kind = "lines", Pattern = LineDialect.Pattern(scenario.Meter.Dialect) },
             ReadingsPerSecond = scenario.Meter.ReadingsPerSecond,
             WindowSeconds = scenario.Meter.WindowSeconds,
             Accuracy = new AccuracyOptions { CountSize = scenario.Meter.CountSize },

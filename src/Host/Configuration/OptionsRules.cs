@@ -1,5 +1,4 @@
 using System.Globalization;
-using System.Text.RegularExpressions;
 using Lampwarden.Acquisition;
 using Lampwarden.Analysis.Lamps;
 using Lampwarden.Analysis.Units;
@@ -90,25 +89,9 @@ internal static class OptionsRules
 
     private static void CheckMeter(MeterOptions meter, string key, List<Fault> faults)
     {
-        if (meter.Transport.Kind == "tcp" && !(int.TryParse(meter.Transport.Port, CultureInfo.InvariantCulture, out var port) && port is >= 1 and <= 65535))
+        foreach (var fault in MeterRules.Faults(meter))
         {
-            Add($"{key}.transport.port", meter.Transport.Port, "a tcp port is a whole number from 1 to 65535", faults);
-        }
-
-        if (meter.Protocol.Kind == "lines")
-        {
-            Try($"{key}.protocol.pattern", meter.Protocol.Pattern, () =>
-            {
-                var groups = new Regex(meter.Protocol.Pattern, RegexOptions.CultureInvariant, TimeSpan.FromSeconds(1)).GetGroupNames();
-                if (!groups.Contains("value"))
-                {
-                    throw new FormatException("the pattern must have a group named value, as in (?<value>[-+0-9.]+)");
-                }
-            }, faults);
-        }
-        else if (!meter.Protocol.Query.TrimEnd().EndsWith('?'))
-        {
-            Add($"{key}.protocol.query", meter.Protocol.Query, "a question ends with '?', such as READ?", faults);
+            Add($"{key}.{fault.Key}", fault.Value, fault.Rule, faults);
         }
     }
 

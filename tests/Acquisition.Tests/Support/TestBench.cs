@@ -6,7 +6,7 @@ namespace Lampwarden.Acquisition.Tests.Support;
 internal sealed class TestBench : IAsyncDisposable
 {
     /// <summary>Long enough for the busiest machine; no test waits for it unless it fails.</summary>
-    public static readonly TimeSpan Deadline = TimeSpan.FromSeconds(30);
+    public static readonly TimeSpan Deadline = TimeSpan.FromSeconds(60);
 
     private readonly CancellationTokenSource _deadline = CancellationTokenSource.CreateLinkedTokenSource(TestContext.Current.CancellationToken);
     private readonly IAsyncEnumerator<MeterEvent> _events;
@@ -32,7 +32,7 @@ internal sealed class TestBench : IAsyncDisposable
 
     public static MeterOptions OptionsFor(IInstrumentPort port)
     {
-        var options = new MeterOptions { Name = "line", ReadingsPerSecond = 50, WindowSeconds = 0.02, ReplyTimeoutSeconds = 0.3, SwitchOnSeconds = 0 };
+        var options = new MeterOptions { Name = "line", ReadingsPerSecond = 50, WindowSeconds = 0.02, ReplyTimeoutSeconds = 10, SwitchOnSeconds = 0 };
         if (port is TcpInstrumentPort tcp)
         {
             options.Transport.Kind = "tcp";

@@ -1,4 +1,5 @@
 using System.ComponentModel.DataAnnotations;
+using Lampwarden.Simulator.Instruments;
 
 namespace Lampwarden.Simulator.Benches;
 
@@ -105,6 +106,16 @@ public sealed class ScenarioMeter
     /// <summary>Largest current the range takes, in A; beyond it the meter answers overload.</summary>
     [Range(0.001, 1000.0)]
     public double RangeAmps { get; set; } = 10;
+
+    /// <summary>Its language: scpi, or one of the free-running dialects words, fields, columns.</summary>
+    [AllowedValues("scpi", "words", "fields", "columns")]
+    public string Dialect { get; set; } = "scpi";
+
+    /// <summary>It sends every command back before it answers.</summary>
+    public bool Echo { get; set; }
+
+    /// <summary>What goes wrong with it and its cable: a kind of <see cref="MeterTrouble"/> in kebab-case, when and for how long.</summary>
+    public IList<ScheduledTrouble> Troubles { get; set; } = [];
 }
 
 /// <summary>Something that goes wrong at a time.</summary>

@@ -14,6 +14,7 @@ public static class ScenarioFile
         AllowTrailingCommas = true,
         UnmappedMemberHandling = JsonUnmappedMemberHandling.Disallow,
         NumberHandling = JsonNumberHandling.Strict,
+        Converters = { new JsonStringEnumConverter(JsonNamingPolicy.KebabCaseLower, allowIntegerValues: false) },
     };
 
     /// <summary>Reads a scenario file.</summary>
@@ -41,6 +42,11 @@ public static class ScenarioFile
         Validate(scenario.Truth, "truth.", faults);
         Validate(scenario.Meter, "meter.", faults);
         Validate(scenario.Expect, "expect.", faults);
+        for (var index = 0; index < scenario.Meter.Troubles.Count; index++)
+        {
+            Validate(scenario.Meter.Troubles[index], string.Create(CultureInfo.InvariantCulture, $"meter.troubles[{index}]."), faults);
+        }
+
         for (var index = 0; index < scenario.Faults.Count; index++)
         {
             Validate(scenario.Faults[index], string.Create(CultureInfo.InvariantCulture, $"faults[{index}]."), faults);

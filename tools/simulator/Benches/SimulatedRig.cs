@@ -76,6 +76,10 @@ public sealed class SimulatedRig : IAsyncDisposable
         GainError = quantity == MeasuredQuantity.LineCurrent ? scenario.Meter.GainErrorPercent / 100 : 0,
         NoiseCounts = 0.3,
         Seed = scenario.Seed,
+        Dialect = scenario.Meter.Dialect,
+        LinesPerSecond = scenario.Meter.ReadingsPerSecond,
+        Echo = scenario.Meter.Echo,
+        Troubles = quantity == MeasuredQuantity.LineCurrent ? scenario.Meter.Troubles : [],
     };
 
     /// <summary>The bench, telling the clock whenever its line current is asked for.</summary>

@@ -15,6 +15,16 @@ public static class LineDialect
     /// <summary>Names of the dialects.</summary>
     public static IReadOnlyList<string> Names { get; } = ["words", "fields", "columns"];
 
+    /// <summary>A .NET regular expression for the dialect's lines, with the groups the product's configuration knows.</summary>
+    /// <exception cref="ArgumentException">There is no such dialect.</exception>
+    public static string Pattern(string dialect) => dialect switch
+    {
+        "words" => "^(?<coupling>AC|DC) +(?<value>[-+]?[0-9]+[.][0-9]+|O[.]L) +(?<unit>[mu]?[AV])$",
+        "fields" => "^[IU];(?<sign>[-+])(?<value>[0-9]+([.][0-9]+)?|OL);(?<unit>[mu]?[AV]);(?<flags>[A-Z ]*)$",
+        "columns" => "^(?<unit>[AV])(?<coupling>[~=])(?<sign>[-+])(?<value>[0-9]{5}|-----)(?<exponent>[-+][0-9]) (?<flags>.)$",
+        _ => throw new ArgumentException($"There is no line dialect '{dialect}'; there are {string.Join(", ", Names)}."),
+    };
+
     /// <summary>One line without its end.</summary>
     /// <param name="dialect">One of <see cref="Names"/>.</param>
     /// <param name="quantity">What is shown.</param>

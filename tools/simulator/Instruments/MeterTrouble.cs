@@ -1,3 +1,5 @@
+using System.ComponentModel.DataAnnotations;
+
 namespace Lampwarden.Simulator.Instruments;
 
 /// <summary>What can go wrong with a meter or its cable. The written form is kebab-case.</summary>
@@ -47,8 +49,10 @@ public sealed class ScheduledTrouble
     public MeterTrouble Kind { get; set; }
 
     /// <summary>Simulated second at which it begins.</summary>
+    [Range(0.0, 3e6)]
     public double AtSeconds { get; set; }
 
     /// <summary>Simulated seconds it lasts; 0 for good (an endless line and a quick restart last no time anyhow).</summary>
+    [Range(0.0, 3e6)]
     public double ForSeconds { get; set; }
 }

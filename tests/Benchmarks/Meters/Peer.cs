@@ -1,0 +1,88 @@
+using System.Diagnostics;
+using System.Text;
+using Lampwarden.Simulator.Instruments;
+
+namespace Lampwarden.Benchmarks.Meters;
+
+/// <summary>
+/// Meters in a process of their own, so that their work is not counted as ours. Started as <c>meters-peer KIND ...</c>; says where its meters
+/// are on standard output and ends when its standard input does.
+/// </summary>
+internal static class Peer
+{
+    /// <summary>What a peer process does.</summary>
+    public static async Task<int> RunAsync(string[] args)
+    {
+        switch (args)
+        {
+            case ["flood"]:
+                await FloodAsync();
+                return 0;
+            case ["scpi"]:
+                await using (var port = new PseudoTerminal())
+                await using (var meter = new SimulatedMeter(new SimulatedMeterOptions(), new Ramp(), port, TimeProvider.System))
+                {
+                    Console.WriteLine(port.Place);
+                    await Console.In.ReadToEndAsync();
+                }
+
+                return 0;
+            case ["crowd", var count]:
+                await CrowdAsync(int.Parse(count, System.Globalization.CultureInfo.InvariantCulture));
+                return 0;
+            default:
+                return 2;
+        }
+    }
+
+    /// <summary>Starts a peer and reads what it says first.</summary>
+    public static (Process Process, string Says) Start(params string[] args)
+    {
+        var start = new ProcessStartInfo(Environment.ProcessPath!) { RedirectStandardInput = true, RedirectStandardOutput = true };
+        foreach (var arg in (string[])["meters-peer", .. args])
+        {
+            start.ArgumentList.Add(arg);
+        }
+
+        var process = Process.Start(start)!;
+        return (process, process.StandardOutput.ReadLine() ?? throw new IOException("the peer process ended at once"));
+    }
+
+    /// <summary>For every line of input holding a number, sends so many lines as fast as they are taken.</summary>
+    private static async Task FloodAsync()
+    {
+        await using var port = new PseudoTerminal();
+        Console.WriteLine(port.Place);
+        var lines = new StringBuilder();
+        for (var line = 0; line < 1000; line++)
+        {
+            lines.Append("AC 0.").Append((4000 + line).ToString(System.Globalization.CultureInfo.InvariantCulture)).Append(" A\r\n");
+        }
+
+        var block = Encoding.ASCII.GetBytes(lines.ToString());
+        while (await Console.In.ReadLineAsync() is { } wanted)
+        {
+            for (var sent = 0; sent < int.Parse(wanted, System.Globalization.CultureInfo.InvariantCulture); sent += 1000)
+            {
+                await port.WriteAsync(block, CancellationToken.None);
+            }
+        }
+    }
+
+    private static async Task CrowdAsync(int count)
+    {
+        var ports = Enumerable.Range(0, count).Select(_ => new TcpInstrumentPort()).ToList();
+        var meters = ports.Select(port => new SimulatedMeter(new SimulatedMeterOptions(), new Ramp(), port, TimeProvider.System)).ToList();
+        Console.WriteLine(string.Join(' ', ports.Select(port => port.Port)));
+        await Console.In.ReadToEndAsync();
+        foreach (var meter in meters)
+        {
+            await meter.DisposeAsync();
+        }
+    }
+
+    private sealed class Ramp : ISimulatedQuantity
+    {
+        public double Rms(MeasuredQuantity quantity, double simulatedSeconds, double windowSeconds) => 0.4 + (simulatedSeconds % 10 * 0.01);
+    }
+}
