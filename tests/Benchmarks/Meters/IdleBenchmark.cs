@@ -41,7 +41,7 @@ internal static class IdleBenchmark
         var pending = stream.ReadAsync(new byte[256], stop.Token).AsTask();
         var share = await ShareAsync(RoundSeconds);
         await stop.CancelAsync();
-        await pending.ConfigureAwait(ConfigureAwaitOptions.SuppressThrowing);
+        await ((Task)pending).ConfigureAwait(ConfigureAwaitOptions.SuppressThrowing);
         return share;
     }
 
@@ -63,7 +63,7 @@ internal static class IdleBenchmark
         await Task.Delay(500);
         var share = await ShareAsync(seconds);
         await stop.CancelAsync();
-        await reading.ConfigureAwait(ConfigureAwaitOptions.SuppressThrowing);
+        await ((Task)reading).ConfigureAwait(ConfigureAwaitOptions.SuppressThrowing);
         var health = session.Health;
         return health.Readings >= 9 * seconds ? share : throw new InvalidOperationException($"only {health.Readings} readings in {seconds} s");
     }
