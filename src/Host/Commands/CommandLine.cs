@@ -62,5 +62,6 @@ public static class CommandLine
         new ReferenceCommand(),
         new ReportCommand(),
         CutOffResetCommand.Group(),
+        new TokenCommand(),
     };
 }

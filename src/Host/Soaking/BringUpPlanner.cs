@@ -6,6 +6,9 @@ namespace Lampwarden.Host.Soaking;
 /// <summary>Finds the steps by which a bank can be switched in lamp by lamp: the smallest part that carries the unit first.</summary>
 public static class BringUpPlanner
 {
+    // Below this, lamps and mains of a few percent off make health and a short look alike.
+    private const double LeastContrast = 1.2;
+
     /// <summary>The steps; the last is the whole bank. One step only where nothing can be left out.</summary>
     /// <param name="whole">The bench with its whole bank.</param>
     /// <param name="inventory">Lamps its bank text may name.</param>
@@ -21,8 +24,9 @@ public static class BringUpPlanner
         }
 
         plans.Reverse();
-        // A part that cannot carry the unit says nothing about it: the unit would only try to start.
-        var useful = plans.Where((plan, index) => plan.Prediction.Steady.Exists || index == plans.Count - 1).ToList();
+        // A part that cannot carry the unit says nothing about it, and one so small that the unit is a short to it says little more.
+        var useful = plans.Where((plan, index) =>
+            index == plans.Count - 1 || (plan.Prediction.Steady.Exists && plan.Prediction.Contrast >= LeastContrast)).ToList();
         return [.. useful.Select((plan, index) => Step(plan, index, useful.Count))];
     }
 

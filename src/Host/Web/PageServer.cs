@@ -78,6 +78,7 @@ public sealed class PageServer : IAsyncDisposable
         AlertEndpoints.Map(api);
         PredictEndpoints.Map(api);
         RunEndpoints.Map(api);
+        TakeAwayEndpoints.Map(api);
         MeterEndpoints.Map(api);
         EventEndpoint.Map(api);
         SessionEndpoint.Map(api);

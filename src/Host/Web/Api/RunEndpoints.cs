@@ -19,15 +19,23 @@ internal static class RunEndpoints
         runs.MapGet("/{run}/attachments/{name}", Attachment).WithSummary("A file kept with a run");
     }
 
-    private static Ok<List<RunLine>> All(
+    private static Results<Ok<List<RunLine>>, ProblemHttpResult> All(
         SoakStore store,
         string? bench = null,
         [Description("Unit text or label, whole or in part")] string? unit = null,
-        [Description("passed, failed or incomplete")] Verdict? verdict = null,
+        [Description("passed, failed or incomplete")] string? verdict = null,
         DateTimeOffset? fromUtc = null,
         DateTimeOffset? toUtc = null,
-        [Description("1 to 10000")] int most = 500) =>
-        TypedResults.Ok(store.Runs(new RunFilter(bench, unit, fromUtc, toUtc, verdict, Math.Clamp(most, 1, 10_000))).Select(RunLine.Of).ToList());
+        [Description("1 to 10000")] int most = 500)
+    {
+        Verdict? wanted = verdict is null ? null : Enum.GetValues<Verdict>().Where(value => value.Text() == verdict).Select(value => (Verdict?)value).FirstOrDefault();
+        if (wanted is null != (verdict is null) || most is < 1 or > 10_000)
+        {
+            return Problems.Bad($"verdict is '{verdict}', most is {most}; expected passed, failed or incomplete, and 1 to 10000.");
+        }
+
+        return TypedResults.Ok(store.Runs(new RunFilter(bench, unit, fromUtc, toUtc, wanted, most)).Select(RunLine.Of).ToList());
+    }
 
     private static Results<Ok<RunDocument>, ProblemHttpResult> One(string run, SoakStore store) => TypedResults.Ok(RunDocument.Of(store.Run(run)));
 

@@ -17,6 +17,7 @@ public sealed class LiveBoard : ISoakListener, IAsyncDisposable
     private readonly Dictionary<string, LiveBench> _benches;
     private readonly Dictionary<string, NowEvent> _now = [];
     private readonly Lock _nowGate = new();
+    private readonly Lock _collecting = new();
     private long _nowVersion;
     private readonly double _stuckSeconds;
     private readonly CancellationTokenSource _stop = new();
@@ -73,6 +74,16 @@ public sealed class LiveBoard : ISoakListener, IAsyncDisposable
     /// <summary>Puts together what is new since the last time and wakes the readers.</summary>
     internal void Collect()
     {
+        lock (_collecting)
+        {
+            CollectInOrder();
+        }
+
+        Log.Wake();
+    }
+
+    private void CollectInOrder()
+    {
         foreach (var (name, bench) in _benches)
         {
             var (changed, now, readings) = bench.Collect(_stuckSeconds);
@@ -94,8 +105,6 @@ public sealed class LiveBoard : ISoakListener, IAsyncDisposable
                 }
             }
         }
-
-        Log.Wake();
     }
 
     /// <summary>Stops.</summary>

@@ -1,0 +1,74 @@
+using Lampwarden.Acquisition;
+using Lampwarden.Analysis.Lamps;
+using Lampwarden.Host.Configuration;
+using Lampwarden.Host.Recording;
+using Lampwarden.Host.Soaking;
+using Lampwarden.Host.Web;
+using Lampwarden.Host.Web.Access;
+using Lampwarden.Host.Web.Live;
+using Microsoft.Extensions.Logging.Abstractions;
+
+namespace Lampwarden.Host.Tests.Web.Support;
+
+/// <summary>The page over benches that do nothing by themselves: a test tells the board what happens.</summary>
+internal sealed class QuietPage : IAsyncDisposable
+{
+    private readonly DirectoryInfo _folder = Directory.CreateTempSubdirectory("lampwarden-page-");
+    private PageServer? _server;
+
+    private QuietPage(IReadOnlyList<BenchPlan> plans)
+    {
+        Plans = plans;
+        Store = SoakStore.Open(_folder.FullName, TimeProvider.System);
+        Board = new LiveBoard(plans);
+    }
+
+    public IReadOnlyList<BenchPlan> Plans { get; }
+
+    public SoakStore Store { get; }
+
+    public LiveBoard Board { get; }
+
+    /// <summary>Without cookies, so that a test sends what it means to send.</summary>
+    public HttpClient Client { get; private set; } = null!;
+
+    public Uri Url { get; private set; } = null!;
+
+    public static Task<QuietPage> OpenAsync(WebOptions? web = null, TimeProvider? time = null) => OpenAsync(web, time, "attic");
+
+    public static async Task<QuietPage> OpenAsync(WebOptions? web, TimeProvider? time, params string[] benches)
+    {
+        var page = new QuietPage([.. benches.Select(name => BenchPlan.From(Bench(name), LampInventory.Empty))]);
+        var options = web ?? new WebOptions();
+        var address = PageAddress.Of(new WebOptions { Address = AnyPort(options.Address), TokenFile = options.TokenFile }, "test");
+        var around = new SoakSurroundings(TimeProvider.System, NullLogger.Instance, [], [page.Board]);
+        var desks = page.Plans.Select(plan => new BenchDesk(plan, LampInventory.Empty, page.Store, around, staysOpen: true)).ToList();
+        page._server = await PageServer.StartAsync(address, LampInventory.Empty, new PageParts(page.Board, desks, page.Store, NullLoggerFactory.Instance), time);
+        page.Url = new Uri(page._server.Url.Replace("0.0.0.0", "127.0.0.1", StringComparison.Ordinal));
+        page.Client = new HttpClient(new SocketsHttpHandler { UseCookies = false }) { BaseAddress = page.Url };
+        return page;
+    }
+
+    /// <summary>A bench of ours: 60 W lamp, a resistor behind it.</summary>
+    public static BenchOptions Bench(string name, string bank = "60 W 120 V || 25 W 120 V", string unit = "resistor 300 ohm") => new()
+    {
+        Name = name,
+        Mains = "120 V 60 Hz",
+        Bank = bank,
+        Unit = unit,
+        Meters = [new MeterOptions { Name = "line", Transport = new TransportOptions { Kind = "tcp", Host = "127.0.0.1", Port = "1" } }],
+    };
+
+    public Task StopAsync() => _server!.DisposeAsync().AsTask();
+
+    public async ValueTask DisposeAsync()
+    {
+        Client.Dispose();
+        await _server!.DisposeAsync();
+        await Board.DisposeAsync();
+        Store.Dispose();
+        _folder.Delete(recursive: true);
+    }
+
+    private static string AnyPort(string address) => new UriBuilder(address) { Port = 0 }.Uri.GetLeftPart(UriPartial.Authority);
+}
