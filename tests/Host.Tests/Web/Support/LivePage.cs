@@ -41,7 +41,7 @@ internal sealed class LivePage : IAsyncDisposable
         page.Plan = BenchPlan.From(options, LampInventory.Empty);
         var address = PageAddress.Of(new WebOptions { Address = "http://127.0.0.1:0" }, "test");
         var order = new PageOrder(address, LampInventory.Empty, StaysOpen: true, MayFail: false, page._prose);
-        page._running = SoakHost.RunAsync([page.Plan], page._folder.FullName, page._clock, [], logToConsole: false, page._clock.Begin, order, page._stop.Token);
+        page._running = SoakHost.RunAsync([page.Plan], page._folder.FullName, page._clock, [], logToConsole: false, page._clock.Begin, order, attended: null, page._stop.Token);
         while (!page._prose.ToString().Contains("The page:", StringComparison.Ordinal))
         {
             if (page._running.IsCompleted)
