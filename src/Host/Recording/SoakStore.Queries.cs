@@ -126,8 +126,10 @@ public sealed partial class SoakStore
         }
     }
 
-    internal long KeyOf(string run) => Read(reader => reader.List<long?>(
-        "SELECT run FROM runs WHERE id=$id", row => row.GetInt64(0), ("$id", run)).FirstOrDefault())
+    internal long KeyOf(string run) => Read(reader => KeyOf(reader, run));
+
+    private long KeyOf(StoreReader reader, string run) => reader.List<long?>(
+        "SELECT run FROM runs WHERE id=$id", row => row.GetInt64(0), ("$id", run)).FirstOrDefault()
         ?? throw new StoreException($"There is no run '{run}' in {FilePath}. 'lampwarden runs' lists those there are.");
 
     internal T Read<T>(Func<StoreReader, T> ask)

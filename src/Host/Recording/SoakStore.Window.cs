@@ -16,9 +16,9 @@ public sealed partial class SoakStore
     {
         ArgumentOutOfRangeException.ThrowIfLessThan(mostBuckets, 1);
         ArgumentOutOfRangeException.ThrowIfNegative(fromSeconds);
-        var key = KeyOf(run);
         return Read(reader =>
         {
+            var key = KeyOf(reader, run);
             var from = (long)Math.Floor(fromSeconds * 1000);
             var to = double.IsPositiveInfinity(toSeconds)
                 ? Math.Max(from + 1, reader.Count(key, "SELECT coalesce(max(to_ms),0)+1 FROM chunks WHERE run=$run"))

@@ -46,7 +46,11 @@ internal sealed class StoreReader : IDisposable
     public IEnumerable<(long First, byte[] Data)> Chunks(long run, long fromMs, long toMs, long fromEntry = 0)
     {
         using var command = Command(
-            "SELECT first, data FROM chunks WHERE run=$run AND first+count>$first AND to_ms>=$from AND from_ms<=$to ORDER BY first",
+            """
+            SELECT first, data FROM chunks WHERE rowid IN (
+                SELECT rowid FROM chunks INDEXED BY chunks_in_time WHERE run=$run AND first+count>$first AND to_ms>=$from AND from_ms<=$to)
+            ORDER BY first
+            """,
             ("$run", run), ("$first", fromEntry), ("$from", fromMs), ("$to", toMs));
         using var rows = command.ExecuteReader();
         while (rows.Read())

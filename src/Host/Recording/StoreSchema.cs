@@ -62,6 +62,10 @@ internal static class StoreSchema
         CREATE TABLE parked_points (
             point INTEGER PRIMARY KEY, target TEXT NOT NULL, run INTEGER NOT NULL, utc_ms INTEGER NOT NULL, reason TEXT NOT NULL, line TEXT NOT NULL);
         """,
+        // All that a search in time needs, in a page or two: the chunks themselves are spread over the file.
+        """
+        CREATE INDEX chunks_in_time ON chunks (run, first, count, from_ms, to_ms);
+        """,
     ];
 
     /// <summary>For a file that cannot be written, and so not be brought to this version.</summary>

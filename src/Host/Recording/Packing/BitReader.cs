@@ -1,5 +1,6 @@
 using System.Buffers.Binary;
 using System.Numerics;
+using System.Runtime.CompilerServices;
 
 namespace Lampwarden.Host.Recording.Packing;
 
@@ -49,6 +50,7 @@ internal ref struct BitReader(ReadOnlySpan<byte> bytes)
     }
 
     /// <summary>One Rice code: ones, a zero, then <paramref name="low"/> bits; <paramref name="escape"/> ones announce 64 plain bits.</summary>
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     public ulong ReadRice(int low, int escape)
     {
         Refill();
@@ -65,6 +67,7 @@ internal ref struct BitReader(ReadOnlySpan<byte> bytes)
         return value;
     }
 
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private void Refill()
     {
         if (_heldBits >= 56)
@@ -87,6 +90,7 @@ internal ref struct BitReader(ReadOnlySpan<byte> bytes)
         }
     }
 
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private void Consume(int bits)
     {
         if (bits > _heldBits)

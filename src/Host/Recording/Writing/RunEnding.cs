@@ -1,11 +1,14 @@
 using System.Text.Json;
 using Lampwarden.Analysis.Watching;
+using Lampwarden.Host.Recording.Packing;
 
 namespace Lampwarden.Host.Recording.Writing;
 
 /// <summary>Puts totals and verdict into a run's row.</summary>
 internal static class RunEnding
 {
+    private const int ChunksTogether = 32;
+
     public static void Write(StoreBatch batch, long run, RunEnd end)
     {
         var last = batch.Ask("SELECT max(to_ms) FROM chunks WHERE run=?", run) as long? ?? 0;
@@ -17,5 +20,28 @@ internal static class RunEnding
             """,
             end.Verdict.Text(), JsonSerializer.Serialize(end.Reasons), end.SummaryJson, length, length, run);
         batch.Run("DELETE FROM watch_states WHERE run=?", run);
+        GatherSlots(batch, run);
+    }
+
+    // While the run went on, its roll-ups were written one by one between its chunks. Side by side they are read in one go.
+    private static void GatherSlots(StoreBatch batch, long run)
+    {
+        var rows = batch.Rows(
+            "SELECT first, count, from_ms, to_ms, slots FROM rollups WHERE run=? ORDER BY first",
+            row => (First: row.GetInt64(0), Count: row.GetInt64(1), From: row.GetInt64(2), To: row.GetInt64(3), Slots: row.GetFieldValue<byte[]>(4)),
+            run);
+        if (rows.Count < 2)
+        {
+            return;
+        }
+
+        batch.Run("DELETE FROM rollups WHERE run=?", run);
+        foreach (var some in rows.Chunk(ChunksTogether))
+        {
+            batch.Run(
+                "INSERT INTO rollups (run, first, count, from_ms, to_ms, slots) VALUES (?,?,?,?,?,?)",
+                run, some[0].First, some.Sum(row => row.Count), some.Min(row => row.From), some.Max(row => row.To),
+                SlotChunk.Pack([.. some.SelectMany(row => SlotChunk.Unpack(row.Slots))]));
+        }
     }
 }

@@ -22,6 +22,18 @@ internal sealed class StoreBatch(SqliteConnection connection, int chunkReadings)
 
     public object? Ask(string sql, params ReadOnlySpan<object?> values) => Prepare(sql, values).ExecuteScalar();
 
+    public List<T> Rows<T>(string sql, Func<SqliteDataReader, T> read, params ReadOnlySpan<object?> values)
+    {
+        using var rows = Prepare(sql, values).ExecuteReader();
+        var list = new List<T>();
+        while (rows.Read())
+        {
+            list.Add(read(rows));
+        }
+
+        return list;
+    }
+
     public void Add(ActiveRun run, in LineReading reading)
     {
         run.Fresh.Add(reading);
