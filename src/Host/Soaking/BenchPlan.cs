@@ -65,12 +65,14 @@ public sealed class BenchPlan
         var bank = Bank.Parse(options.Bank, mains, inventory);
         var unit = Unit.Parse(options.Unit, mains);
         var line = options.Meters.Single(meter => meter.Quantity == Quantity.LineCurrent);
-        var prediction = Predictor.Predict(mains, bank, unit, new PredictionSettings { MeterWindowSeconds = line.WindowSeconds, WithIntervals = false });
+        var mainsMeter = options.Meters.SingleOrDefault(meter => meter.Quantity == Quantity.MainsVoltage);
+        var assumed = new PredictionSettings { Meter = Predicted(line), WithIntervals = false };
+        var prediction = Predictor.Predict(mains, bank, unit, mainsMeter is null ? assumed : assumed with { MainsUncertainty = MeasuredMainsUncertainty });
         var settings = new WatchSettings
         {
             ReadingsPerSecond = Math.Clamp(line.ReadingsPerSecond, 0.2, 100),
             NominalMainsVolts = mains.Volts,
-            MainsMeasured = options.Meters.Any(meter => meter.Quantity == Quantity.MainsVoltage),
+            MainsMeasured = mainsMeter is not null,
             PlannedHours = options.Soak.PlannedHours,
             Acceptance = new AcceptanceLimits(options.Soak.Acceptance.SteadyWithinPercent, 1 - options.Soak.Acceptance.GapsAtMostPercent / 100),
             Meter = new MeterTraits(line.WindowSeconds, line.Accuracy.PercentOfReading, line.Accuracy.Counts, line.Accuracy.CountSize, line.Coupling == "ac"),
@@ -87,6 +89,22 @@ public sealed class BenchPlan
         {
             Expectation = expected with { SteadyAmps = band.SteadyAmps, BandLowAmps = band.LowAmps, BandHighAmps = band.HighAmps },
         });
+
+    /// <summary>A configured meter in the words of prediction.</summary>
+    public static PredictedMeter Predicted(MeterOptions meter) => new()
+    {
+        WindowSeconds = meter.WindowSeconds,
+        Coupling = meter.Coupling == "ac" ? MeterCoupling.Ac : MeterCoupling.AcDc,
+        Response = meter.Response switch
+        {
+            "firstOrder" => MeterResponse.FirstOrder,
+            "meanResponding" => MeterResponse.MeanResponding,
+            _ => MeterResponse.TrueRms,
+        },
+        PercentOfReading = meter.Accuracy.PercentOfReading,
+        Counts = meter.Accuracy.Counts,
+        CountSize = meter.Accuracy.CountSize,
+    };
 
     private static Expectation? ExpectationOf(Mains mains, Bank bank, Unit unit, BenchPrediction prediction, double? expectedAmps)
     {
@@ -113,6 +131,9 @@ public sealed class BenchPlan
     }
 
     private const double SettledSeconds = 60;
+
+    // Relative, one sigma. The mains still wanders between the moment of prediction and the reading.
+    private const double MeasuredMainsUncertainty = 0.01;
 
     private static double MainsExponent(Mains mains, Bank bank, Unit unit)
     {

@@ -15,8 +15,14 @@ public static class Inventory
     {
         LampFill? fill = options.Fill switch { "gas" => LampFill.Gas, "vacuum" => LampFill.Vacuum, _ => null };
         var lamp = Analysis.Lamps.Lamp.FromNameplate(options.Name, options.RatedWatts, options.RatedVolts, fill);
-        return options.Calibration is null
-            ? lamp
-            : throw new ArgumentException($"Lamp '{options.Name}' has a calibration, which this version cannot use yet; take it out.");
+        return options.Calibration is { } measured
+            ? lamp.Calibrated(new LampCalibration(
+                measured.ColdOhms ?? double.NaN,
+                measured.RoomCelsius,
+                measured.ShortedAmps ?? double.NaN,
+                measured.ShortedVolts ?? double.NaN,
+                measured.DimAmps ?? double.NaN,
+                measured.DimVolts ?? double.NaN))
+            : lamp;
     }
 }
