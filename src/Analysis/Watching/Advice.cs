@@ -20,6 +20,22 @@ internal static class Advice
     public static string StepDown(double percent, double amps) => Invariant(
         $"The current fell by {percent:0.#} % to {Amps(amps)} and stayed there, with the mains unmoved: look whether a lamp of the bank has gone dark, then at the unit.");
 
+    /// <summary>A step with its explanation.</summary>
+    public static string Step(double change, double amps, string why, string first) => Invariant(
+        $"The current {(change > 0 ? "jumped" : "fell")} by {Math.Abs(Math.Exp(change) - 1) * 100:0.#} % to {Amps(amps)} and stayed there: {why}; {first}.");
+
+    public static string LookFirst(Cause cause) => cause switch
+    {
+        Cause.UnitTakesMore => "switch off and look for what has become hot",
+        Cause.UnitTakesLess => "look which part of the unit has stopped working",
+        Cause.CircuitOpened => "look at the unit's fuse, the lamps and the leads, and do not trust the unit to be dead",
+        Cause.LampDark => "look at the bank first and replace the lamp with power off",
+        Cause.LampLit => "nothing to do if that was meant; the prediction has been moved along",
+        Cause.MainsMoved => "measure the mains to be sure",
+        Cause.MeterScale => "look at the meter's range",
+        _ => "if so, tell the watch next time before the change",
+    };
+
     public static string Open(double amps) => Invariant(
         $"The current fell to {Amps(amps)}: the circuit has opened; look at the unit's fuse, the lamps and the leads, and do not trust the unit to be dead.");
 
@@ -28,6 +44,12 @@ internal static class Advice
 
     public static string Mains(double percent) => Invariant(
         $"The mains moved by {percent:+0.#;-0.#} %: no fault of the unit, but if it comes again and again look at what else hangs on this line.");
+
+    public static string SlowInrush(double seconds, double predicted) => Invariant(
+        $"After switch-on the current took {seconds:0} s to come down, where {predicted:0.##} s were predicted: a start-up that hesitates, such as a reservoir drawn down by a leak or a motor that turns hard; listen and feel before going on.");
+
+    public static string Stuck(double amps, double seconds) => Invariant(
+        $"The meter has shown exactly {Amps(amps)} for {seconds:0} s, longer than its own noise allows: it hangs or is on hold; look at its display and press hold, and trust no silence of the watch until it moves.");
 
     public static string Cycling(double periodSeconds) => double.IsNaN(periodSeconds)
         ? "The unit drops out and starts again: either the bank is too small for it, or its protection trips; try one more lamp in parallel before suspecting the unit."
@@ -38,6 +60,24 @@ internal static class Advice
 
     public static string Developing(double percent, double percentPerHour, double amps) => Invariant(
         $"The current has risen {percent:0.#} % above what this unit should draw, to {Amps(amps)}{(double.IsNaN(percentPerHour) ? "" : Invariant($", and climbs {percentPerHour:0.#} % an hour"))}: a short is likely developing; look for a part that runs hot, and be ready to switch off.");
+
+    /// <summary>A slow rise with its forecast.</summary>
+    public static string Rising(Signature signature, double percent, double percentPerHour, double amps, double warningAmps, Forecast forecast)
+    {
+        var pace = signature switch
+        {
+            Signature.Runaway => Invariant($"and rises ever faster, now {percentPerHour:0.#} % an hour: something heats itself"),
+            Signature.HardShort => "as if in one step: a part may have shorted in part",
+            _ => Invariant($"and climbs {percentPerHour:0.#} % an hour: a short is likely developing"),
+        };
+        var when = double.IsFinite(forecast.HighSeconds) && forecast.HighSeconds > 0 && signature != Signature.HardShort
+            ? Invariant($"; it will reach {Amps(warningAmps)} in about {Span(forecast.MiddleSeconds)} ({Span(forecast.LowSeconds)} to {Span(forecast.HighSeconds)})")
+            : "";
+        return Invariant($"The current is {percent:0.#} % above what this unit should draw, at {Amps(amps)}, {pace}{when}; look for a part that runs hot, and be ready to switch off.");
+    }
+
+    private static string Span(double seconds) =>
+        seconds < 90 ? Invariant($"{seconds:0} s") : seconds < 5400 ? Invariant($"{seconds / 60:0} min") : Invariant($"{seconds / 3600:0.#} h");
 
     public static string FallingSlowly(double percent, double amps) => Invariant(
         $"The current has sunk {percent:0.#} % below what was expected, to {Amps(amps)}: often a long warm-up, else a part that fades; compare with the prediction before the unit goes back.");

@@ -151,6 +151,9 @@ internal sealed class SlowChannel
     /// <summary>The likeliest fault of one direction, cried or not.</summary>
     public SlowCry Best(double seconds, int sign) => suspicions.Best(seconds, sign);
 
+    /// <summary>When the excess will reach a target, from all rising faults that the readings still allow.</summary>
+    public Forecast ForetellExcess(double seconds, double target) => Forecast.Of(scores, seconds, target);
+
     /// <summary>A change has been explained: the model goes on from the new level, and no onset before it counts.</summary>
     public void ShiftLevel(double by)
     {

@@ -5,42 +5,87 @@ public sealed partial class Watch
     private const double GoneRatio = 2;
     private const double GoneSeconds = 900;
 
+    // Without a prediction: what calls for a look and what calls for the switch, as excess over the healthy current.
+    private const double WarningExcess = 0.10, StopExcess = 0.25;
+    private const double UrgentExcess = 0.08, UrgentSeconds = 3600;
+    private const double AmendEverySeconds = 900, AmendGrowth = 1.5;
+
+    // A growing fault and a straight one look much alike when first seen: the likelihoods differ by less than one. The cut is where on the
+    // tuning corpora the two kinds of mistake cost the same.
+    private const double GrowthLead = 0.15;
+    private const double StepLead = 2;
+
     private int riseFinding;
     private int fallFinding;
     private double goneSince = double.NaN;
+    private double amendedSeconds;
+    private double amendedExcess;
 
     private void WeighSlow(in Observation o)
     {
         var cry = slow.Ask(o.Seconds);
         if (cry.Direction > 0 && !book.Stands(riseFinding))
         {
-            riseFinding = book.Raise(RiseSignature(cry), Severity.Critical, cry.OnsetSeconds, o.Seconds, RiseSentence(cry, o), RiseEvidence(cry, o));
+            var (signature, severity, sentence, evidence) = Rise(cry, o);
+            riseFinding = book.Raise(signature, severity, cry.OnsetSeconds, o.Seconds, sentence, evidence);
         }
         else if (cry.Direction < 0 && !book.Stands(fallFinding))
         {
-            var lamp = cry.Shape == FaultShape.Step;
-            fallFinding = book.Raise(
-                lamp ? Signature.LampOut : Signature.OffPrediction,
-                lamp ? Severity.Warning : Severity.Notice,
-                cry.OnsetSeconds,
-                o.Seconds,
-                lamp ? Advice.StepDown(-cry.Excess * 100, o.LineAmps) : Advice.FallingSlowly(-cry.Excess * 100, o.LineAmps),
-                RiseEvidence(cry, o));
+            RaiseFall(cry, o);
         }
         else if (book.Stands(riseFinding))
         {
-            Maintain(o, ref riseFinding, up: true);
+            MaintainRise(o);
         }
         else if (book.Stands(fallFinding))
         {
-            Maintain(o, ref fallFinding, up: false);
+            ClearIfGone(slow.Best(o.Seconds, -1), o, ref fallFinding);
         }
     }
 
-    private void Maintain(in Observation o, ref int number, bool up)
+    private void RaiseFall(in SlowCry cry, in Observation o)
     {
-        var best = slow.Best(o.Seconds, up ? 1 : -1);
-        if (best.Ratio > GoneRatio || (up && stepOffset > 0.01))
+        var lamp = cry.Shape == FaultShape.Step;
+        fallFinding = book.Raise(
+            lamp ? Signature.LampOut : Signature.OffPrediction,
+            lamp ? Severity.Warning : Severity.Notice,
+            cry.OnsetSeconds,
+            o.Seconds,
+            lamp ? Advice.StepDown(-cry.Excess * 100, o.LineAmps) : Advice.FallingSlowly(-cry.Excess * 100, o.LineAmps),
+            new() { ["lineAmps"] = o.LineAmps, ["excessPercent"] = cry.Excess * 100, ["logLikelihoodRatio"] = cry.Ratio });
+    }
+
+    private void MaintainRise(in Observation o)
+    {
+        var best = slow.Best(o.Seconds, 1);
+        var signature = book[riseFinding].Signature;
+        if (signature is Signature.DevelopingShort or Signature.Runaway && best.Ratio > GoneRatio && stepOffset == 0)
+        {
+            // Renamed only while the alarm is young, or when the evidence for the other shape has become strong.
+            var young = o.Seconds - book[riseFinding].RaisedSeconds < 60;
+            var renamed = RiseSignature(best) != signature && (young || Math.Abs(best.GrowthRatio - best.RampRatio) > 3);
+            if (renamed || best.Excess > AmendGrowth * amendedExcess || o.Seconds - amendedSeconds > AmendEverySeconds)
+            {
+                var (named, severity, sentence, evidence) = Rise(best, o);
+                book.Amend(riseFinding, old => old with
+                {
+                    Signature = renamed ? named : old.Signature,
+                    Severity = severity > old.Severity ? severity : old.Severity,
+                    Explanation = sentence,
+                    Evidence = evidence,
+                });
+            }
+        }
+
+        if (stepOffset <= 0.01)
+        {
+            ClearIfGone(best, o, ref riseFinding);
+        }
+    }
+
+    private void ClearIfGone(in SlowCry best, in Observation o, ref int number)
+    {
+        if (best.Ratio > GoneRatio)
         {
             goneSince = double.NaN;
             return;
@@ -55,28 +100,48 @@ public sealed partial class Watch
         }
     }
 
-    // A growing fault and a straight one look much alike when first seen: the likelihoods differ by less than one. The cut is where on the
-    // tuning corpora the two kinds of mistake cost the same.
-    private const double GrowthLead = 0.15;
-    private const double StepLead = 2;
-
     private static Signature RiseSignature(in SlowCry cry) =>
         cry.StepRatio > Math.Max(cry.RampRatio, cry.GrowthRatio) + StepLead ? Signature.HardShort
         : cry.GrowthRatio > cry.RampRatio + GrowthLead ? Signature.Runaway
         : Signature.DevelopingShort;
 
-    private static string RiseSentence(in SlowCry cry, in Observation o) =>
-        Advice.Developing(cry.Excess * 100, cry.Shape == FaultShape.Ramp ? cry.Size * 100 : double.NaN, o.LineAmps);
-
-    private static Dictionary<string, double> RiseEvidence(in SlowCry cry, in Observation o) => new()
+    private (Signature Signature, Severity Severity, string Sentence, Dictionary<string, double> Evidence) Rise(in SlowCry cry, in Observation o)
     {
-        ["lineAmps"] = o.LineAmps,
-        ["excessPercent"] = cry.Excess * 100,
-        ["risePercentPerHour"] = cry.Shape == FaultShape.Ramp ? cry.Size * 100 : double.NaN,
-        ["logLikelihoodRatio"] = cry.Ratio,
-        ["growthOverRamp"] = cry.GrowthRatio - cry.RampRatio,
-        ["stepOverRamp"] = cry.StepRatio - cry.RampRatio,
-    };
+        (amendedSeconds, amendedExcess) = (o.Seconds, cry.Excess);
+        var signature = RiseSignature(cry);
+        var healthy = o.LineAmps / (1 + Math.Max(cry.Excess, 0));
+        var warning = Target(expectation?.BandHighAmps, healthy, WarningExcess);
+        var stop = Math.Max(Target(expectation?.ShortedAmps * 0.9, healthy, StopExcess), warning * 1.2);
+        var toWarning = slow.ForetellExcess(o.Seconds, warning);
+        var toStop = slow.ForetellExcess(o.Seconds, stop);
+        var perHour = cry.Shape == FaultShape.Ramp ? cry.Size
+            : cry.Shape == FaultShape.Step ? double.NaN
+            : (FaultScores.Unit(cry.Shape, o.Seconds + 360 - cry.OnsetSeconds) - FaultScores.Unit(cry.Shape, o.Seconds - cry.OnsetSeconds)) * cry.Size * 10;
+        var severity = cry.Excess > UrgentExcess || toStop.MiddleSeconds < UrgentSeconds ? Severity.Critical : Severity.Warning;
+        return (signature, severity, Advice.Rising(signature, cry.Excess * 100, perHour * 100, o.LineAmps, healthy * (1 + warning), toWarning), new()
+        {
+            ["lineAmps"] = o.LineAmps,
+            ["healthyAmps"] = healthy,
+            ["excessPercent"] = cry.Excess * 100,
+            ["risePercentPerHour"] = perHour * 100,
+            ["sizeSdShare"] = cry.SizeSd / cry.Size,
+            ["logLikelihoodRatio"] = cry.Ratio,
+            ["growthOverRamp"] = cry.GrowthRatio - cry.RampRatio,
+            ["warningAmps"] = healthy * (1 + warning),
+            ["warningInSeconds"] = Finite(toWarning.MiddleSeconds),
+            ["warningInLowSeconds"] = Finite(toWarning.LowSeconds),
+            ["warningInHighSeconds"] = Finite(toWarning.HighSeconds),
+            ["stopAmps"] = healthy * (1 + stop),
+            ["stopInSeconds"] = Finite(toStop.MiddleSeconds),
+            ["stopInLowSeconds"] = Finite(toStop.LowSeconds),
+            ["stopInHighSeconds"] = Finite(toStop.HighSeconds),
+        });
+    }
+
+    private static double Target(double? amps, double healthy, double otherwise) =>
+        amps / healthy - 1 is { } share and > 0.02 ? share : otherwise;
+
+    private static double Finite(double value) => double.IsFinite(value) ? value : double.NaN;
 
     private void Forgive(double seconds)
     {
@@ -103,5 +168,7 @@ public sealed partial class Watch
         state.Field(ref riseFinding);
         state.Field(ref fallFinding);
         state.Field(ref goneSince);
+        state.Field(ref amendedSeconds);
+        state.Field(ref amendedExcess);
     }
 }

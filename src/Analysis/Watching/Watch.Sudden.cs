@@ -41,6 +41,7 @@ public sealed partial class Watch
         var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * mains.Unrest);
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);
+        WatchStuck(o, Math.Exp(foretold));
         var cry = sudden.Observe(seconds, o.LineAmps, Math.Exp(foretold), excursion.Active ? 0 : offset, sd, extra, noise.Pole, noise.PoleDoubtful || !settings.MainsMeasured);
         if (excursion.Active)
         {
@@ -205,7 +206,7 @@ public sealed partial class Watch
 
             if (excursion.Number > 0 && !excursionJoins && !excursion.HasReturned)
             {
-                Rename(o, StepSignature(step));
+                Explain(o, by);
                 stepFinding = excursion.Number;
             }
 
@@ -217,6 +218,38 @@ public sealed partial class Watch
         trend.Restart();
         slow.ShiftLevel(by);
     }
+
+    /// <summary>Weighs what may have made the step that has stayed, and says it; where a lamp explains it, the prediction follows.</summary>
+    private void Explain(in Observation o, double change)
+    {
+        var sd = Math.Sqrt((noise.WhiteSd * noise.WhiteSd / 10) + slow.Model.ForetoldVariance + 4e-6);
+        var why = Hypotheses.Weigh(change, sd, expectation, settings.MainsMeasured);
+        var signature = SignatureOf(why, change);
+        var severity = why.Cause is Cause.LampLit or Cause.MainsMoved ? Severity.Notice : SeverityOf(signature, excursion.Step);
+        var sentence = Advice.Step(change, o.LineAmps, Hypotheses.Sentence(why), Advice.LookFirst(why.Cause));
+        var evidence = Evidence(o);
+        evidence["likelierTimes"] = why.Times;
+        if (why.Lamp is { } lamp)
+        {
+            evidence["lampPredictedAmps"] = why.Cause == Cause.LampDark ? lamp.AmpsWithout : lamp.AmpsWith;
+            expectation = expectation!.Scaled(Math.Exp(change), lamp);
+        }
+
+        book.Amend(excursion.Number, old => old with { Signature = signature, Severity = severity, Explanation = sentence, Evidence = evidence });
+        if (severity == Severity.Notice)
+        {
+            book.Clear(excursion.Number, o.Seconds);
+        }
+    }
+
+    private static Signature SignatureOf(in Explained why, double change) => why.Cause switch
+    {
+        Cause.LampDark or Cause.LampLit => Signature.LampOut,
+        Cause.CircuitOpened => Signature.OpenCircuit,
+        Cause.MainsMoved => Signature.MainsShift,
+        Cause.UnitTakesLess => Signature.OffPrediction,
+        _ => change > 0 ? Signature.HardShort : Signature.OffPrediction,
+    };
 
     /// <summary>No step but a climb too fast for blocks: it joins or becomes the standing rise, and the trend is told so as not to cry again.</summary>
     private void ConfirmClimb(in Observation o)

@@ -6,8 +6,9 @@ namespace Lampwarden.Analysis.Watching;
 /// </summary>
 public sealed partial class Watch
 {
-    private const int StateVersion = 2;
+    private const int StateVersion = 3;
     private const double LeastSettleSeconds = 5;
+    private const double SlowInrushSeconds = 4, SlowInrushTimes = 8;
 
     private readonly WatchSettings settings;
     private readonly FindingBook book = new();
@@ -19,7 +20,10 @@ public sealed partial class Watch
     private readonly Excursion excursion = new();
     private readonly LocalTrend trend = new();
     private readonly SlowChannel slow;
+    private readonly StuckCode stuck;
+    private readonly InrushView inrush = new();
     private Expectation? expectation;
+    private int stuckFinding;
     private double firstSeconds = double.NaN;
     private double lastSeconds;
     private double lastReadingSeconds = double.NaN;
@@ -40,6 +44,7 @@ public sealed partial class Watch
         noise = new MeterNoise(settings.ReadingsPerSecond);
         mains = new MainsView(settings.NominalMainsVolts);
         slow = new SlowChannel(settings.MainsMeasured);
+        stuck = new StuckCode(settings.ReadingsPerSecond);
         AssumeExponent();
     }
 
@@ -173,6 +178,7 @@ public sealed partial class Watch
             WatchMains(seconds);
         }
 
+        WatchInrush(o);
         if (!Settled(seconds) || seconds < holdUntilSeconds)
         {
             return;
@@ -186,6 +192,46 @@ public sealed partial class Watch
 
         lastReadingSeconds = seconds;
         WeighReading(o);
+    }
+
+    /// <summary>A current that takes seconds where prediction says tenths: a start-up that hesitates.</summary>
+    private void WatchInrush(in Observation o)
+    {
+        if (!inrush.Observe(o.Seconds - firstSeconds, o.LineAmps) || expectation is not { SettleSeconds: > 0 } expected)
+        {
+            return;
+        }
+
+        var settled = inrush.SettledSeconds;
+        if (settled > Math.Max(SlowInrushSeconds, SlowInrushTimes * expected.SettleSeconds))
+        {
+            book.Raise(Signature.SlowInrush, Severity.Warning, firstSeconds, o.Seconds, Advice.SlowInrush(settled, expected.SettleSeconds), new()
+            {
+                ["settledSeconds"] = settled,
+                ["predictedSettleSeconds"] = expected.SettleSeconds,
+                ["lineAmps"] = o.LineAmps,
+            });
+        }
+    }
+
+    private void WatchStuck(in Observation o, double foretoldAmps)
+    {
+        if (stuck.Observe(o.Seconds, o.LineAmps, foretoldAmps, noise))
+        {
+            if (!book.Stands(stuckFinding))
+            {
+                stuckFinding = book.Raise(Signature.MeterStuck, Severity.Critical, stuck.SinceSeconds, o.Seconds, Advice.Stuck(o.LineAmps, o.Seconds - stuck.SinceSeconds), new()
+                {
+                    ["lineAmps"] = o.LineAmps,
+                    ["equalReadings"] = stuck.Repeats + 1,
+                    ["stuckSeconds"] = o.Seconds - stuck.SinceSeconds,
+                });
+            }
+        }
+        else if (stuck.Changes >= 3 && book.Stands(stuckFinding))
+        {
+            book.Clear(stuckFinding, o.Seconds);
+        }
     }
 
     private double MainsScale(in Observation o)
@@ -217,12 +263,16 @@ public sealed partial class Watch
         excursion.Transfer(state);
         trend.Transfer(state);
         slow.Transfer(state);
+        stuck.Transfer(state);
+        inrush.Transfer(state);
+        state.Field(ref stuckFinding);
         state.Field(ref firstSeconds);
         state.Field(ref lastSeconds);
         state.Field(ref lastReadingSeconds);
         state.Field(ref announcedSeconds);
         state.Field(ref holdUntilSeconds);
         state.Field(ref readings);
+        Expectation.Transfer(state, ref expectation);
         TransferSudden(state);
         TransferSlow(state);
     }

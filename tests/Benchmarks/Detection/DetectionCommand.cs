@@ -166,7 +166,7 @@ public static class DetectionCommand
 
             if (request.Verbose)
             {
-                Console.WriteLine("    " + string.Join(", ", trials[0].GroupBy(trial => trial.Called).Select(group => Invariant($"{group.Key}: {group.Count()}"))) + Invariant($" | growth over ramp 10/25/50/75/90 %: {string.Join(' ', new[] { 0.1, 0.25, 0.5, 0.75, 0.9 }.Select(share => Score.Quantile(trials[0].Select(trial => trial.Aside), share).ToString("0.0", CultureInfo.InvariantCulture)))}"));
+                Console.WriteLine("    " + string.Join(", ", trials[0].GroupBy(trial => trial.Called).Select(group => Invariant($"{group.Key}: {group.Count()}"))) + ForecastText(trials[0]));
             }
 
             if (fault.Kind != FaultKind.Sag)
@@ -222,7 +222,29 @@ public static class DetectionCommand
         var delay = alarm - run.Truth.OnsetSeconds;
         return double.IsNaN(alarm) || delay > run.Fault.HorizonSeconds
             ? new Trial(double.PositiveInfinity, double.NaN, "", 0, 0)
-            : new Trial(delay, excess, detector.Called, 0, 0) { Aside = (detector as WatchDetector)?.Finding.Evidence.GetValueOrDefault("growthOverRamp") ?? 0 };
+            : new Trial(delay, excess, detector.Called, 0, 0) { Forecast = ForecastOf(detector, run, alarm) };
+    }
+
+    /// <summary>Whether the moment foretold for the warning level, as said within ten seconds of the alarm, holds the true one: -1 early, 0 inside, +1 late; null without forecast.</summary>
+    private static int? ForecastOf(IDetector detector, CorpusRun run, double alarm)
+    {
+        if (detector is not WatchDetector { Finding.Evidence: var evidence } || !evidence.TryGetValue("warningInLowSeconds", out var low)
+            || run.Fault.Kind is not (FaultKind.Creep or FaultKind.Runaway))
+        {
+            return null;
+        }
+
+        var target = (evidence["warningAmps"] / evidence["healthyAmps"]) - 1;
+        var age = run.Fault.Kind == FaultKind.Creep ? target / run.Fault.Size * 3600 : run.Fault.Size * Math.Log(1 + (target / 0.003));
+        var due = run.Truth.OnsetSeconds + age - alarm;
+        var high = double.IsNaN(evidence["warningInHighSeconds"]) ? double.PositiveInfinity : evidence["warningInHighSeconds"];
+        return due < low ? -1 : due > high ? 1 : 0;
+    }
+
+    private static string ForecastText(Trial[] trials)
+    {
+        var given = trials.Where(trial => trial.Forecast is not null).ToArray();
+        return given.Length == 0 ? "" : Invariant($" | forecast inside {100.0 * given.Count(trial => trial.Forecast == 0) / given.Length:0} %, true moment earlier {100.0 * given.Count(trial => trial.Forecast < 0) / given.Length:0} %, later {100.0 * given.Count(trial => trial.Forecast > 0) / given.Length:0} %");
     }
 
     private static void Print(Fault fault, string name, Trial[] trials)

@@ -6,8 +6,8 @@ namespace Lampwarden.Benchmarks.Detection;
 /// <param name="DelaySeconds">Infinite if missed; NaN if the trial is dropped because of an alarm in the 90 minutes before the onset.</param>
 public readonly record struct Trial(double DelaySeconds, double Excess, string Called, double Oracle, double Cautious)
 {
-    /// <summary>Evidence kept aside for tuning.</summary>
-    public double Aside { get; init; }
+    /// <summary>Where the true moment of the warning level lies against the forecast: -1 before its interval, 0 inside, +1 after; null without one.</summary>
+    public int? Forecast { get; init; }
 }
 
 /// <summary>Rules and arithmetic of the score.</summary>
