@@ -7,6 +7,8 @@ switch (args.FirstOrDefault())
 {
     case "detection":
         return DetectionCommand.Run(args[1..]);
+    case "detection-cost":
+        return DetectionCostCommand.Run();
     case "store":
         return await StoreCommand.RunAsync();
     case "kill-store":
