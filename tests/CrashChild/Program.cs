@@ -12,11 +12,13 @@ var output = Console.Out;
 output.WriteLine($"interrupted {store.Interrupted.Count}");
 var run = await store.BeginRunAsync(new RunStart { Bench = "kill", Unit = "resistor 50 ohm", Bank = "60 W", Mains = "120 V 60 Hz" });
 output.WriteLine($"run {run.Run}");
+// An alert's commit takes the readings before it along. Every other life has few alerts, so that the commit's own pace is what counts.
+var alertEvery = Environment.ProcessId % 2 == 0 ? 37 : 1500;
 for (var number = 0L; ; number++)
 {
     run.Append(new LineReading(number / 100.0, 0.4 + (number % 1000 / 10_000.0), 4));
     output.WriteLine(string.Create(CultureInfo.InvariantCulture, $"read {number} {TimeProvider.System.GetUtcNow().ToUnixTimeMilliseconds()}"));
-    if (number % 37 == 36)
+    if (number % alertEvery == alertEvery - 1)
     {
         run.AppendAlert(new StoredAlertChange(number / 100.0, TimeProvider.System.GetUtcNow(), $"alert-{number}", "raised", "unacknowledged"));
         if (await run.FlushAsync())

@@ -1,4 +1,3 @@
-using InfluxDB.Client.Writes;
 using Lampwarden.Host.Recording.Forwarding;
 
 namespace Lampwarden.Host.Recording;
@@ -26,9 +25,9 @@ public sealed partial class SoakStore
         ("$target", target)));
 
     /// <summary>The next points of a run, about <paramref name="most"/> at most, and where the cursor stands once they are sent.</summary>
-    internal (List<PointData> Points, OutboxCursor To) Collect(OutboxRun run, int most)
+    internal (List<string> Points, OutboxCursor To) Collect(OutboxRun run, int most)
     {
-        var points = new List<PointData>();
+        var points = new List<string>();
         var to = run.Cursor;
         if (!to.Begun)
         {
@@ -37,12 +36,13 @@ public sealed partial class SoakStore
         }
 
         to = CollectChanges(run, points, to);
+        var head = InfluxPoints.ReadingHead(run);
         foreach (var (first, readings) in Stretches(run.Id, run.Key, to.Entries))
         {
             var taken = Math.Min(readings.Count, most - points.Count);
             foreach (ref readonly var reading in readings.AsSpan(0, Math.Max(0, taken)))
             {
-                points.Add(InfluxPoints.Reading(run, reading));
+                points.Add(InfluxPoints.Reading(head, run.StartedMs, reading));
             }
 
             to = to with { Entries = first + Math.Max(0, taken) };
@@ -86,7 +86,7 @@ public sealed partial class SoakStore
         },
         cancellationToken);
 
-    private OutboxCursor CollectChanges(OutboxRun run, List<PointData> points, OutboxCursor to)
+    private OutboxCursor CollectChanges(OutboxRun run, List<string> points, OutboxCursor to)
     {
         var findings = Read(reader => reader.List(
             $"SELECT {RunRows.FindingColumns}, change FROM finding_changes WHERE run=$run AND change>$after ORDER BY change LIMIT {ChangesAtATime}",

@@ -22,7 +22,7 @@ internal static class KillStoreCommand
         var (longestMs, alerts, readings) = (0L, 0, 0L);
         for (var round = 1; round <= times; round++)
         {
-            var life = await LiveAndDieAsync(folder, TimeSpan.FromMilliseconds(random.Next(0, 3000)));
+            var life = await LiveAndDieAsync(folder, TimeSpan.FromMilliseconds(random.Next(0, 5000)));
             using var store = SoakStore.Open(folder, TimeProvider.System, StoreMode.Review);
             var stored = life.Run.Length == 0 ? 0 : store.Readings(life.Run).Count();
             var lostMs = stored < life.ReadAtMs.Count ? life.ReadAtMs[^1] - life.ReadAtMs[stored] : 0;

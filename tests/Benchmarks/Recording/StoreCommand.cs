@@ -18,7 +18,7 @@ internal static class StoreCommand
     public static async Task<int> RunAsync()
     {
         Console.WriteLine("A settled 12-hour run at 10/s (432,000 readings, six digits, milliseconds), bytes a reading once closed:");
-        foreach (var (noise, jitter) in new[] { (5.0, 0.5), (20, 1.5), (100, 1.5), (100, 4), (400, 8) })
+        foreach (var (noise, jitter) in new[] { (5.0, 0.5), (20, 1.5), (100, 1.5), (100, 4), (400, 8), (800, 8) })
         {
             var (packed, _) = await MeasureAsync(12, 10, noise, jitter, plain: false);
             Console.WriteLine(Text($"  noise {noise,4:0} counts, jitter {jitter,3:0.0} ms: {packed.BytesPerReading:0.00}"));

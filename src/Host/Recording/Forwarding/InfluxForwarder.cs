@@ -1,4 +1,3 @@
-using InfluxDB.Client.Writes;
 using Lampwarden.Host.Configuration;
 
 namespace Lampwarden.Host.Recording.Forwarding;
@@ -102,10 +101,10 @@ public sealed class InfluxForwarder : IDisposable
 
     // A refused batch is halved until the culprits stand alone; they are put aside and the rest goes through. A batch that
     // is bad throughout is put aside in blocks after some single ones, or it would cost two requests a point.
-    private async Task<SendOutcome> SendOrParkAsync(OutboxRun run, List<PointData> points, CancellationToken cancellationToken)
+    private async Task<SendOutcome> SendOrParkAsync(OutboxRun run, List<string> points, CancellationToken cancellationToken)
     {
         var parkedAlone = 0;
-        var waiting = new Stack<List<PointData>>([points]);
+        var waiting = new Stack<List<string>>([points]);
         while (waiting.TryPop(out var part))
         {
             var outcome = await _target.SendAsync(part, cancellationToken);
@@ -119,7 +118,7 @@ public sealed class InfluxForwarder : IDisposable
                     waiting.Push(part[..(part.Count / 2)]);
                     break;
                 case SendResult.Refused:
-                    await _store.ParkAsync(_target.Name, run.Key, outcome.Why!, [.. part.Select(point => point.ToLineProtocol())], cancellationToken);
+                    await _store.ParkAsync(_target.Name, run.Key, outcome.Why!, part, cancellationToken);
                     Log.PointsParked(Logger, part.Count, run.Id, outcome.Why!);
                     parkedAlone++;
                     _parked += part.Count;

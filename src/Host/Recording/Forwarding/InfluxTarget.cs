@@ -1,8 +1,8 @@
 using System.Net;
 using InfluxDB.Client;
 using InfluxDB.Client.Core.Exceptions;
-using InfluxDB.Client.Writes;
 using Lampwarden.Host.Configuration;
+using WritePrecision = InfluxDB.Client.Api.Domain.WritePrecision;
 
 namespace Lampwarden.Host.Recording.Forwarding;
 
@@ -58,11 +58,11 @@ internal sealed class InfluxTarget : IDisposable
     /// <summary>Names the target in the store; no secret in it.</summary>
     public string Name => $"{_options.Api} {new Uri(_options.Url).GetLeftPart(UriPartial.Path)} {_options.Org}/{_options.Bucket}";
 
-    public async Task<SendOutcome> SendAsync(IReadOnlyList<PointData> points, CancellationToken cancellationToken)
+    public async Task<SendOutcome> SendAsync(IReadOnlyList<string> lines, CancellationToken cancellationToken)
     {
         try
         {
-            await _write.WritePointsAsync([.. points], _options.Bucket, _options.Org.Length > 0 ? _options.Org : "-", cancellationToken);
+            await _write.WriteRecordsAsync([.. lines], WritePrecision.Ms, _options.Bucket, _options.Org.Length > 0 ? _options.Org : "-", cancellationToken);
             return new SendOutcome(SendResult.Sent);
         }
         catch (HttpException trouble)

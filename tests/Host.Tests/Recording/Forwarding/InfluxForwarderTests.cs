@@ -138,8 +138,11 @@ public sealed class InfluxForwarderTests : IDisposable
     public void Points_AwkwardNames_AreEscapedAsTheProtocolAsks()
     {
         var run = new OutboxRun(1, "20260402-001", InfluxPoints.Tag("amp 7, left=\\"), 0, false, default);
-        var line = InfluxPoints.Reading(run, new LineReading(1.5, 0.4123, 4)).ToLineProtocol();
-        Assert.Equal("soak_reading,bench=amp\\ 7\\,\\ left\\=,run=20260402-001 amps=0.4123 1500", line);
+        const string head = "soak_reading,bench=amp\\ 7\\,\\ left\\=,run=20260402-001";
+        Assert.Equal(head, InfluxPoints.ReadingHead(run));
+        Assert.Equal(head + " amps=0.4123 2500", InfluxPoints.Reading(head, 1000, new LineReading(1.5, 0.4123, 4)));
+        Assert.Equal(head + " overload=true,volts=119.5 2500", InfluxPoints.Reading(head, 1000, new LineReading(1.5, double.PositiveInfinity, 0, 119.5, 1)));
+        Assert.Equal(head + " missed=true 2500", InfluxPoints.Reading(head, 1000, new LineReading(1.5, double.NaN)));
     }
 
     private SoakStore Open() => SoakStore.Open(_folder.Path, TimeProvider.System, StoreMode.Recording, new StoreOptions { ChunkReadings = 4096 });
