@@ -60,6 +60,7 @@ public static class CommandLine
         new ImportCommand(),
         new CompareCommand(),
         new ReferenceCommand(),
+        new NoteCommand(),
         new ReportCommand(),
         CutOffResetCommand.Group(),
         new TokenCommand(),

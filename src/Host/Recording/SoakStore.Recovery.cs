@@ -10,6 +10,23 @@ public sealed partial class SoakStore
     public const string InterruptedReason =
         "The recording was interrupted before the run's end (the program was killed or the power failed): what is stored reaches up to the last second before that.";
 
+    /// <summary>
+    /// The run that this opening found interrupted on a bench, if the same unit stands behind the same bank now. Given once:
+    /// the first run begun there carries it on, the next is a new soak.
+    /// </summary>
+    /// <returns>Null where there is none.</returns>
+    public string? TakeInterrupted(RunStart next)
+    {
+        lock (_resumable)
+        {
+            var run = _resumable.FirstOrDefault(run => (run.Bench, run.Unit, run.UnitLabel, run.Bank, run.Mains) == (next.Bench, next.Unit, next.UnitLabel, next.Bank, next.Mains));
+            _resumable.RemoveAll(other => other.Bench == next.Bench);
+            return run?.Run;
+        }
+    }
+
+    private readonly List<RunInfo> _resumable = [];
+
     // Only the holder of the folder's lock comes here, so a run without an end is nobody's.
     private void CloseInterrupted()
     {
@@ -27,6 +44,7 @@ public sealed partial class SoakStore
         }
 
         Interrupted = [.. open.Select(info => Run(info.Run).Info)];
+        _resumable.AddRange(Interrupted);
     }
 
     /// <summary>A run as its writer left it: what lies in short chunks is packed when it is closed.</summary>

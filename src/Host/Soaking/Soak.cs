@@ -172,7 +172,7 @@ public sealed class Soak
 
         // Current flowed for some part of this reading's window: the window's start is the latest sure time before it.
         _originSeconds = look.ElapsedSeconds - _plan.LineMeter.WindowSeconds;
-        var recorder = await _store.BeginRunAsync(new RunStart
+        var start = new RunStart
         {
             Bench = _plan.Name,
             Unit = _plan.Unit.Text,
@@ -184,7 +184,8 @@ public sealed class Soak
             Software = Product.NameAndVersion,
             StartedUtc = look.Utc,
             UnitLabel = _plan.Options.UnitLabel,
-        }, stop);
+        };
+        var recorder = await _store.BeginRunAsync(start with { ResumedFrom = _store.TakeInterrupted(start) }, stop);
         _recorder = recorder;
         Log.SoakStarted(_around.Logger, _plan.Name, recorder.Run, _plan.Unit.Text, _plan.Bank.Text, _plan.Mains.ToString());
         Tell(new RunBegan(_plan.Name, recorder.Run, _bringUp?.Plan ?? _plan, look.Utc));

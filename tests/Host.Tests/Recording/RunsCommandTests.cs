@@ -58,6 +58,32 @@ public sealed class RunsCommandTests : IDisposable
         Assert.Contains("the unit's: it loads the bank more", root.GetProperty("remarks")[0].GetString(), StringComparison.Ordinal);
     }
 
+    [Fact]
+    public async Task Replay_StoredRun_IsThatOfItsExport()
+    {
+        var run = await RecordAsync(0.40, 1);
+        var file = Path.Combine(_folder.Path, "run.csv");
+        await CliAsync("export", run, "--record", _folder.Path, "--output", file);
+        var stored = await CliAsync("replay", run, "--record", _folder.Path, "--json");
+        var exported = await CliAsync("replay", file, "--json");
+        Assert.Equal(0, stored.Code);
+        Assert.Equal(exported.Output, stored.Output);
+        Assert.Equal(3000, JsonDocument.Parse(stored.Output).RootElement.GetProperty("readings").GetInt64());
+    }
+
+    [Fact]
+    public async Task Note_WithAPhotograph_IsKeptAndAMissingFileKeepsNothing()
+    {
+        var run = await RecordAsync(0.40, 1);
+        var photo = Path.Combine(_folder.Path, "cap.jpg");
+        await File.WriteAllBytesAsync(photo, [1, 2, 3]);
+        Assert.Equal(2, (await CliAsync("note", run, "bulges", "--attach", photo, "--attach", photo + "x", "--record", _folder.Path)).Code);
+        Assert.Equal(0, (await CliAsync("note", run, "bulges", "--by", "Ada", "--attach", photo, "--record", _folder.Path)).Code);
+        using var store = SoakStore.Open(_folder.Path, TimeProvider.System, StoreMode.Review);
+        Assert.Equal(("Ada", "bulges"), (Assert.Single(store.Run(run).Notes).Author, store.Run(run).Notes[0].Text));
+        Assert.Equal("image/jpeg", Assert.Single(store.Run(run).Attachments).MediaType);
+    }
+
     // An inrush of 1.2 A that falls to the steady current within two seconds.
     private async Task<string> RecordAsync(double steadyAmps, int hour)
     {

@@ -93,9 +93,11 @@ public sealed class SoakStoreTests : IDisposable
         var closed = Assert.Single(again.Interrupted);
         Assert.Equal((id, Verdict.Incomplete, 100, 99.0), (closed.Run, closed.Verdict, closed.Readings, closed.LengthSeconds));
         Assert.Equal([SoakStore.InterruptedReason], again.Run(id).Reasons);
-        var resumed = await again.BeginRunAsync(Start() with { ResumedFrom = id });
+        Assert.Null(again.TakeInterrupted(Start("another-bench")));
+        var resumed = await again.BeginRunAsync(Start() with { ResumedFrom = again.TakeInterrupted(Start()) });
         Assert.Equal(id, again.Run(resumed.Run).Info.ResumedFrom);
         Assert.NotEqual(id, resumed.Run);
+        Assert.Null(again.TakeInterrupted(Start()));
     }
 
     [Fact]
