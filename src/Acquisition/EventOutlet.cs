@@ -33,13 +33,17 @@ internal sealed class EventOutlet
     public ChannelReader<MeterEvent> Reader => _channel.Reader;
 
     /// <summary>A reading or an overload out of a line that arrived.</summary>
-    public void Value(in MeterValue value, long firstByteStamp, double latencySeconds)
+    /// <param name="value">What it said.</param>
+    /// <param name="firstByteStamp">When it began.</param>
+    /// <param name="latencySeconds">From the question, or its beginning, to its end.</param>
+    /// <param name="countLine">The line is not counted yet: count it with the event.</param>
+    public void Value(in MeterValue value, long firstByteStamp, double latencySeconds, bool countLine = false)
     {
         var utc = Clock.Utc(firstByteStamp);
         lock (_gate)
         {
             Emit(new MeterEvent(value.Kind, _sequence++, value.Value, utc, Clock.ElapsedSeconds(firstByteStamp), latencySeconds,
-                Detail: value.Detail, Digits: value.Digits, WindowSeconds: _windowSeconds));
+                Detail: value.Detail, Digits: value.Digits, WindowSeconds: _windowSeconds), countLine);
         }
     }
 
@@ -97,14 +101,14 @@ internal sealed class EventOutlet
         }
     }
 
-    private void Emit(in MeterEvent one)
+    private void Emit(in MeterEvent one, bool countLine = false)
     {
         if (_completed)
         {
             return;
         }
 
-        Health.Event(one);
+        Health.Event(one, countLine);
         if (_waiting.Count > 0 || !_channel.Writer.TryWrite(one))
         {
             _waiting.Enqueue(one);

@@ -31,10 +31,19 @@ internal sealed class HealthBook
 
     public long Readings => Interlocked.Read(ref _readings);
 
-    public void Event(in MeterEvent one)
+    /// <summary>Counts an event.</summary>
+    /// <param name="one">The event.</param>
+    /// <param name="line">It came of a line that is to be counted as received and used.</param>
+    public void Event(in MeterEvent one, bool line = false)
     {
         lock (_gate)
         {
+            if (line)
+            {
+                _received++;
+                _used++;
+            }
+
             if (one.Kind == MeterEventKind.Gap)
             {
                 _gaps[(int)one.Reason]++;
@@ -78,6 +87,15 @@ internal sealed class HealthBook
         lock (_gate)
         {
             _passedOver++;
+        }
+    }
+
+    public void LineReceivedAndRefused(GapReason reason)
+    {
+        lock (_gate)
+        {
+            _received++;
+            _refused[(int)reason]++;
         }
     }
 

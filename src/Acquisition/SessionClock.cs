@@ -14,6 +14,8 @@ internal sealed class SessionClock
     private readonly Lock _gate = new();
     private readonly double _firstOffset;
     private double _lastOffset;
+    private long _lastStamp = long.MinValue;
+    private DateTimeOffset _lastUtc;
 
     public SessionClock(TimeProvider time, long origin, HealthBook health)
     {
@@ -36,6 +38,14 @@ internal sealed class SessionClock
     /// <summary>Wall time of a recent monotonic time stamp.</summary>
     public DateTimeOffset Utc(long stamp)
     {
+        lock (_gate)
+        {
+            if (stamp == _lastStamp)
+            {
+                return _lastUtc; // the lines of one chunk came at one instant: three looks at a clock for each would cost as much as reading it
+            }
+        }
+
         var before = _time.GetTimestamp();
         var utc = _time.GetUtcNow();
         var after = _time.GetTimestamp();
@@ -44,7 +54,13 @@ internal sealed class SessionClock
             Compare(utc, before);
         }
 
-        return utc - _time.GetElapsedTime(stamp, before);
+        var named = utc - _time.GetElapsedTime(stamp, before);
+        lock (_gate)
+        {
+            (_lastStamp, _lastUtc) = (stamp, named);
+        }
+
+        return named;
     }
 
     private void Compare(DateTimeOffset utc, long stamp)

@@ -48,10 +48,9 @@ internal sealed class LineMeter : IMeterProtocol, ILineSink
         var stations = _line.Stations;
         foreach (var station in stations)
         {
-            station.Health.LineReceived();
             if (_first || stale)
             {
-                station.Health.LineRefused(stale ? GapReason.StaleAnswer : GapReason.NotANumber);
+                station.Health.LineReceivedAndRefused(stale ? GapReason.StaleAnswer : GapReason.NotANumber);
                 continue;
             }
 
@@ -59,17 +58,17 @@ internal sealed class LineMeter : IMeterProtocol, ILineSink
             var value = station.Reader is LinePattern pattern ? pattern.Read(line, out notForUs) : station.Reader.Read(line);
             if (notForUs && (stations.Length > 1 || station.Options.Protocol.Ignore.Length > 0))
             {
+                station.Health.LineReceived();
                 station.Health.LinePassedOver();
             }
             else if (value.Kind == MeterEventKind.Gap)
             {
-                station.Health.LineRefused(value.Reason);
+                station.Health.LineReceivedAndRefused(value.Reason);
                 station.Outlet.Gap(value.Reason, value.Detail!);
             }
             else
             {
-                station.Health.LineUsed();
-                station.Outlet.Value(value, firstByteStamp, station.Outlet.Clock.Seconds(firstByteStamp, lastByteStamp));
+                station.Outlet.Value(value, firstByteStamp, station.Outlet.Clock.Seconds(firstByteStamp, lastByteStamp), countLine: true);
             }
         }
 

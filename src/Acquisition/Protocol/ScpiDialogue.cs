@@ -23,7 +23,9 @@ internal readonly record struct Answer(byte[] Bytes, long FirstByteStamp, long L
 internal sealed class ScpiDialogue : ILineSink, IDisposable
 {
     // More lines than this between two questions is babble: the newest are refused and counted.
-    private readonly Channel<Answer> _answers = Channel.CreateBounded<Answer>(new BoundedChannelOptions(64) { SingleReader = true, SingleWriter = true });
+    // The asking task goes on at once on the reading task's thread: a wake-up of another thread costs more than all of a poll's own work.
+    private readonly Channel<Answer> _answers = Channel.CreateBounded<Answer>(
+        new BoundedChannelOptions(64) { SingleReader = true, SingleWriter = true, AllowSynchronousContinuations = true });
     private readonly Dictionary<string, byte[]> _commands = new(StringComparer.Ordinal);
     private readonly Wire _wire;
     private CancellationTokenSource _timer = new();

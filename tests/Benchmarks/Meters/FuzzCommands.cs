@@ -16,7 +16,7 @@ internal static class FuzzCommands
         foreach (var outcome in ParserFuzz.Run(lines, seed))
         {
             bad |= outcome.Wrong is not null;
-            Console.WriteLine($"  {outcome.Parser,-9} {outcome.Lines} lines, {outcome.Numbers} taken for numbers, {(outcome.Wrong is null ? "none wrongly" : "WRONG: " + outcome.Wrong)}");
+            Console.WriteLine($"  {outcome.Parser,-9} {outcome.Lines} lines, {outcome.Numbers} taken, {(outcome.Wrong is null ? "none wrongly" : "WRONG: " + outcome.Wrong)}");
         }
 
         Console.WriteLine(string.Create(CultureInfo.InvariantCulture, $"  memory grew by {(Memory() - before) / 1024.0:0} KiB"));

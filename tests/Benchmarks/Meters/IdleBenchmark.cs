@@ -16,10 +16,12 @@ internal static class IdleBenchmark
         var (peer, place) = Peer.Start("scpi");
         var idle = new List<double>();
         var asking = new List<double>();
+        var bare = new List<double>();
         await SessionAsync(place, 3); // warm-up
         for (var round = 0; round < Rounds; round++)
         {
             idle.Add(await OpenPortAsync(place));
+            bare.Add(await BareAsync(place));
             asking.Add(await SessionAsync(place, RoundSeconds));
         }
 
@@ -28,8 +30,9 @@ internal static class IdleBenchmark
         var (low, high) = (Median(idle), Median(asking));
         Console.WriteLine(string.Create(CultureInfo.InvariantCulture, $"idle: share of one core over {RoundSeconds} s, median of {Rounds} rounds in turn"));
         Console.WriteLine(string.Create(CultureInfo.InvariantCulture, $"  open port, a read pending   {low:0.00} %"));
+        Console.WriteLine(string.Create(CultureInfo.InvariantCulture, $"  bare questions, 10 a second {Median(bare):0.00} %"));
         Console.WriteLine(string.Create(CultureInfo.InvariantCulture, $"  session at 10 readings/s    {high:0.00} %"));
-        Console.WriteLine(string.Create(CultureInfo.InvariantCulture, $"  the session's own           {high - low:0.00} % of a core"));
+        Console.WriteLine(string.Create(CultureInfo.InvariantCulture, $"  the session above the open port {high - low:0.00} %, above the bare questions {high - Median(bare):0.00} % of a core"));
     }
 
     private static async Task<double> OpenPortAsync(string place)
@@ -42,6 +45,32 @@ internal static class IdleBenchmark
         var share = await ShareAsync(RoundSeconds);
         await stop.CancelAsync();
         await ((Task)pending).ConfigureAwait(ConfigureAwaitOptions.SuppressThrowing);
+        return share;
+    }
+
+    /// <summary>The least that asking can cost: write the question, read until the line ends, sleep.</summary>
+    private static async Task<double> BareAsync(string place)
+    {
+        using var port = new SerialPort(place, 115200);
+        port.Open();
+        await using var stream = port.BaseStream;
+        using var stop = new CancellationTokenSource();
+        var asking = Task.Run(async () =>
+        {
+            var buffer = new byte[256];
+            while (!stop.IsCancellationRequested)
+            {
+                await stream.WriteAsync("READ?\n"u8.ToArray(), CancellationToken.None);
+                while (!buffer.AsSpan(0, await stream.ReadAsync(buffer, CancellationToken.None)).Contains((byte)'\n'))
+                {
+                }
+
+                await Task.Delay(100, CancellationToken.None);
+            }
+        });
+        var share = await ShareAsync(RoundSeconds);
+        await stop.CancelAsync();
+        await asking;
         return share;
     }
 

@@ -10,6 +10,8 @@ namespace Lampwarden.Benchmarks.Meters;
 /// </summary>
 internal static class Peer
 {
+    private const int BlockLines = 10_000;
+
     /// <summary>What a peer process does.</summary>
     public static async Task<int> RunAsync(string[] args)
     {
@@ -53,20 +55,30 @@ internal static class Peer
     {
         await using var port = new PseudoTerminal();
         Console.WriteLine(port.Place);
-        var lines = new StringBuilder();
-        for (var line = 0; line < 1000; line++)
-        {
-            lines.Append("AC 0.").Append((4000 + line).ToString(System.Globalization.CultureInfo.InvariantCulture)).Append(" A\r\n");
-        }
-
-        var block = Encoding.ASCII.GetBytes(lines.ToString());
+        var (soak, different) = (Block(soak: true), Block(soak: false));
         while (await Console.In.ReadLineAsync() is { } wanted)
         {
-            for (var sent = 0; sent < int.Parse(wanted, System.Globalization.CultureInfo.InvariantCulture); sent += 1000)
+            var words = wanted.Split(' ');
+            for (var sent = 0; sent < int.Parse(words[1], System.Globalization.CultureInfo.InvariantCulture); sent += BlockLines)
             {
-                await port.WriteAsync(block, CancellationToken.None);
+                await port.WriteAsync(words[0] == "soak" ? soak : different, CancellationToken.None);
             }
         }
+    }
+
+    /// <summary>Lines of a soak: noise of five counts about a value that creeps; or lines of which no two are the same.</summary>
+    private static byte[] Block(bool soak)
+    {
+        var random = new Random(5);
+        var lines = new StringBuilder();
+        for (var line = 0; line < BlockLines; line++)
+        {
+            var noise = Math.Sqrt(-2 * Math.Log(1 - random.NextDouble())) * Math.Cos(Math.Tau * random.NextDouble());
+            var counts = soak ? 4125 + (line * 200 / BlockLines) + (int)Math.Round(5 * noise) : line;
+            lines.Append("AC 0.").Append(counts.ToString("0000", System.Globalization.CultureInfo.InvariantCulture)).Append(" A\r\n");
+        }
+
+        return Encoding.ASCII.GetBytes(lines.ToString());
     }
 
     private static async Task CrowdAsync(int count)
