@@ -145,6 +145,7 @@ public sealed class AccessTests : IDisposable
         Assert.Equal(HttpStatusCode.Unauthorized, (await GetAsync(page, "/api/benches")).StatusCode);
         Assert.Equal(HttpStatusCode.Unauthorized, (await GetAsync(page, "/api/events")).StatusCode);
         Assert.Equal(HttpStatusCode.Unauthorized, (await GetAsync(page, "/api/benches", Bearer(PageToken.Make()))).StatusCode);
+        Assert.Equal(HttpStatusCode.Unauthorized, (await GetAsync(page, "/metrics")).StatusCode);
         Assert.Equal(HttpStatusCode.OK, (await GetAsync(page, "/api/benches", Bearer(_token))).StatusCode);
         // The page's own files tell how to make a token, and nothing else.
         Assert.Equal(HttpStatusCode.OK, (await GetAsync(page, "/")).StatusCode);

@@ -1,5 +1,6 @@
 using System.Net;
 using Lampwarden.Host.Web.Api;
+using Lampwarden.Host.Web.Files;
 using Microsoft.AspNetCore.Http.HttpResults;
 
 namespace Lampwarden.Host.Web.Access;
@@ -118,7 +119,7 @@ internal sealed class AccessRules(PageAddress address, WrongTokens wrong, TimePr
     private ProblemHttpResult? Token(HttpContext context)
     {
         var request = context.Request;
-        if (address.Token is null || !request.Path.StartsWithSegments("/api") || request.Path.Equals("/api/session", StringComparison.OrdinalIgnoreCase))
+        if (address.Token is null || PageFiles.Has(request.Path) || request.Path.Equals("/api/session", StringComparison.OrdinalIgnoreCase))
         {
             return null;
         }

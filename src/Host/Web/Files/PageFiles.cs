@@ -14,6 +14,9 @@ internal static class PageFiles
     /// <summary>Whether the build had npm, so that traces can be drawn.</summary>
     public static bool HasTraces => All.ContainsKey("/parts/uPlot.esm.js");
 
+    /// <summary>Whether a path is one of the page's files.</summary>
+    public static bool Has(PathString path) => path.Value is null or "/" || All.ContainsKey(path.Value);
+
     /// <summary>Answers a GET of one of the files; anything else goes on.</summary>
     public static async Task ServeAsync(HttpContext context, RequestDelegate next)
     {

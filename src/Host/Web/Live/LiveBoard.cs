@@ -24,10 +24,12 @@ public sealed class LiveBoard : ISoakListener, IAsyncDisposable
     private Task? _loop;
 
     /// <summary>A board of these benches.</summary>
-    public LiveBoard(IReadOnlyList<BenchPlan> plans)
+    /// <param name="plans">At least one.</param>
+    /// <param name="stuckSeconds">Real seconds without any word of a soak's loop after which its bench counts as blind; NaN: five, and three readings.</param>
+    public LiveBoard(IReadOnlyList<BenchPlan> plans, double stuckSeconds = double.NaN)
     {
         _benches = plans.ToDictionary(plan => plan.Name, plan => new LiveBench(plan), StringComparer.Ordinal);
-        _stuckSeconds = 5 + plans.Max(plan => 3 / plan.LineMeter.ReadingsPerSecond);
+        _stuckSeconds = double.IsNaN(stuckSeconds) ? 5 + plans.Max(plan => 3 / plan.LineMeter.ReadingsPerSecond) : stuckSeconds;
         Names = [.. plans.Select(plan => plan.Name)];
     }
 

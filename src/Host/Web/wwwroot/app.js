@@ -22,6 +22,7 @@ const stale = document.getElementById("stale");
 let view = null;
 let locked = false;
 let asked = false;
+let routed = null;
 
 const ROUTES = {
   "": () => (state.benches.size === 1 ? benchView({ state, name: [...state.benches.keys()][0] }) : tilesView({ state })),
@@ -39,7 +40,8 @@ const stream = new Stream({
     const changed = take(state, type, data, id);
     if (type === "reset") {
       text(link, "live");
-      if (view === null) {
+      // Which benches there are decides what the first page is.
+      if (view === null || routed === "") {
         show();
       } else {
         view.reset?.();
@@ -68,6 +70,7 @@ function go(address) {
 
 function show() {
   const [, route = "", ...words] = location.hash.split("/").map(decodeURIComponent);
+  routed = locked ? null : route;
   view?.close();
   view = locked ? tokenView({ entered }) : (ROUTES[route] ?? ROUTES[""])(...words);
   main.replaceChildren(view.node);

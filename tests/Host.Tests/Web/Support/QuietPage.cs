@@ -20,7 +20,8 @@ internal sealed class QuietPage : IAsyncDisposable
     {
         Plans = plans;
         Store = SoakStore.Open(_folder.FullName, TimeProvider.System);
-        Board = new LiveBoard(plans);
+        // No loop runs here, so none can be stuck.
+        Board = new LiveBoard(plans, stuckSeconds: double.PositiveInfinity);
     }
 
     public IReadOnlyList<BenchPlan> Plans { get; }

@@ -9,6 +9,10 @@ test("standing_OpenCritical_GoesBeforeEverything", () => {
   assert.equal(standing(bench("a", "watching", { alerts: [alert("warning"), alert("critical")], blind: true })), "critical");
 });
 
+test("standing_WarningOfABlindBench_KeepsItsName", () => {
+  assert.equal(standing(bench("a", "watching", { blind: true, alerts: [alert("warning")] })), "warning");
+});
+
 test("standing_BlindBench_IsNotHolding", () => assert.equal(standing(bench("a", "watching", { blind: true })), "blind"));
 
 test("standing_ShelvedOrOver_AsksNobody", () => {

@@ -31,7 +31,9 @@ async function ask(method, path, body, signal) {
   }
 
   if (answer.ok) {
-    return answer.status === 204 ? null : answer.json();
+    // 202 and 204 have nothing to say.
+    const said = await answer.text();
+    return said === "" ? null : JSON.parse(said);
   }
 
   const problem = await answer.json().catch(() => ({}));

@@ -49,6 +49,10 @@ export function standing(bench) {
     return worst ? "warning" : "idle";
   }
 
+  if (worst?.severity === "warning") {
+    return "warning";
+  }
+
   if (bench.blind) {
     return "blind";
   }
