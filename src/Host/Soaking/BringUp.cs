@@ -5,11 +5,12 @@ namespace Lampwarden.Host.Soaking;
 
 /// <summary>One step of a bring-up: a bank with fewer lamps than the last, and what it should show.</summary>
 /// <param name="Plan">The bench with that bank.</param>
+/// <param name="Adds">What is switched in at this step.</param>
 /// <param name="ExpectLowAmps">Lower end of what a healthy unit shows.</param>
 /// <param name="ExpectHighAmps">Upper end.</param>
 /// <param name="StopAboveAmps">Above this the mains is to be switched off.</param>
 /// <param name="Why">What the step is good for.</param>
-public sealed record BringUpStep(BenchPlan Plan, double ExpectLowAmps, double ExpectHighAmps, double StopAboveAmps, string Why)
+public sealed record BringUpStep(BenchPlan Plan, string Adds, double ExpectLowAmps, double ExpectHighAmps, double StopAboveAmps, string Why)
 {
     /// <summary>The bank as text.</summary>
     public string Bank => Plan.Bank.Text;
@@ -194,11 +195,11 @@ public sealed class BringUp(IReadOnlyList<BringUpStep> steps)
     private string Sentence() => _state switch
     {
         "waiting" => $"Begin with {steps[_at].Bank} alone and switch the mains on: expect {Band(steps[_at])}.",
-        "moving" => $"{steps[_at].Bank} is in: waiting for {Band(steps[_at])}.",
+        "moving" => $"{steps[_at].Adds} is in: waiting for {Band(steps[_at])}.",
         "stop" => $"Switch the mains off: more than {Narration.Amps(steps[_at].StopAboveAmps)} through {steps[_at].Bank}.",
         "ready" when Math.Abs(NextShare) < LeastShare =>
-            $"{steps[_at].Bank} holds. Switch in {steps[_at + 1].Bank}; the current will hardly show it, so say when it is in.",
-        "ready" => $"{steps[_at].Bank} holds. Switch in {steps[_at + 1].Bank}: expect {Band(steps[_at + 1])}.",
+            $"{steps[_at].Bank} holds. Switch in {steps[_at + 1].Adds}; the current will hardly show it, so say when it is in.",
+        "ready" => $"{steps[_at].Bank} holds. Switch in {steps[_at + 1].Adds}: expect {Band(steps[_at + 1])}.",
         _ => $"{steps[_at].Bank} holds: the bring-up is done.",
     };
 

@@ -14,23 +14,35 @@ public static class BringUpPlanner
     /// <param name="inventory">Lamps its bank text may name.</param>
     public static IReadOnlyList<BringUpStep> Steps(BenchPlan whole, LampInventory inventory)
     {
-        var plans = new List<BenchPlan> { whole };
+        var plans = new List<(BenchPlan Plan, string? Adds)>();
+        var next = whole;
         var without = new HashSet<int>();
         while (Largest(whole.Bank, without) is { } lamp)
         {
             without.Add(lamp);
-            var text = Without(whole.Bank.Root, without)!;
-            plans.Add(BenchPlan.From(whole.Options.With(bank: text), inventory));
+            plans.Add((next, whole.Bank.Lamps[lamp].Name));
+            next = BenchPlan.From(whole.Options.With(bank: Without(whole.Bank.Root, without)!), inventory);
         }
 
+        plans.Add((next, null));
         plans.Reverse();
         // A part that cannot carry the unit says nothing about it, and one so small that the unit is a short to it says little more.
-        var useful = plans.Where((plan, index) =>
-            index == plans.Count - 1 || (plan.Prediction.Steady.Exists && plan.Prediction.Contrast >= LeastContrast)).ToList();
-        return [.. useful.Select((plan, index) => Step(plan, index, useful.Count))];
+        var steps = new List<(BenchPlan Plan, string Adds)>();
+        var adds = new List<string>();
+        foreach (var (plan, added) in plans)
+        {
+            adds.Add(added ?? plan.Bank.Text);
+            if (ReferenceEquals(plan, whole) || (plan.Prediction.Steady.Exists && plan.Prediction.Contrast >= LeastContrast))
+            {
+                steps.Add((plan, steps.Count == 0 ? plan.Bank.Text : string.Join(" and ", adds)));
+                adds.Clear();
+            }
+        }
+
+        return [.. steps.Select((step, index) => Step(step.Plan, step.Adds, index, steps.Count))];
     }
 
-    private static BringUpStep Step(BenchPlan plan, int index, int count)
+    private static BringUpStep Step(BenchPlan plan, string adds, int index, int count)
     {
         var (band, shorted) = (plan.Prediction.Band, plan.Prediction.Shorted.LineAmps);
         var why = index == 0
@@ -39,7 +51,7 @@ public static class BringUpPlanner
                 ? "The bank for the soak."
                 : $"A little more: a short could draw {Narration.Amps(shorted)}.";
         // Midway between health and a dead short, in ratios.
-        return new BringUpStep(plan, band.LowAmps, band.HighAmps, Math.Sqrt(band.HighAmps * Math.Max(shorted, band.HighAmps)), why);
+        return new BringUpStep(plan, adds, band.LowAmps, band.HighAmps, Math.Sqrt(band.HighAmps * Math.Max(shorted, band.HighAmps)), why);
     }
 
     // The largest lamp that can be left out with a way for the current still there.

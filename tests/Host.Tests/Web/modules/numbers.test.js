@@ -40,7 +40,7 @@ test("withInterval_WideInterval_DoesNotPretend", () => {
 });
 
 test("withInterval_OnlyTheUpperEnd_SaysBelow", () => {
-  assert.equal(plain(withInterval(null, null, 18.2, "Ω").text), "below 18 Ω");
+  assert.equal(plain(withInterval(null, null, 18.2, "Ω").text), "< 18 Ω");
 });
 
 test("withInterval_Kiloohms_ShareOneUnit", () => {

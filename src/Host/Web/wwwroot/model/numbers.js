@@ -60,11 +60,11 @@ function decimalsOfInterval(low, high) {
 
 /**
  * A value with its interval: `83.1 V` and `79.6 to 86.5 V`. Where only the upper end is known the number itself
- * says so: `below 18 Ω`.
+ * says so: `< 18 Ω`.
  */
 export function withInterval(value, low, high, unit) {
   if (!isNumber(value) && isNumber(high)) {
-    return { text: `below${NO_BREAK}${withUnit(high, unit, 2)}`, interval: "" };
+    return { text: `<${NO_BREAK}${withUnit(high, unit, 2)}`, interval: "below this; more cannot be said" };
   }
 
   if (!isNumber(value)) {

@@ -114,9 +114,9 @@ function gestures(plot, extent, go) {
 }
 
 function summary(record, also) {
-  return h("p", {}, record.verdict ? badge(record.verdict) : badge("watching", "goes on"), " ",
-    `${also ? record.run + ": " : ""}${record.bench}, ${record.unit} behind ${record.bank} at ${record.mains}. Begun ${wallTime(record.startedUtc)}, ${span(record.lengthSeconds)} of ${span(record.plannedHours * 3600)}, ${count(record.readings)} readings. `,
-    record.reasons.join(" "));
+  return h("div", {}, h("p", {}, record.verdict ? badge(record.verdict) : badge("watching", "goes on"), " ",
+    `${also ? record.run + ": " : ""}${record.bench}, ${record.unit} behind ${record.bank} at ${record.mains}. Begun ${wallTime(record.startedUtc)}, ${span(record.lengthSeconds)} of ${span(record.plannedHours * 3600)}, ${count(record.readings)} readings.`),
+    h("ul", { class: "plain" }, record.reasons.map((reason) => h("li", {}, reason))));
 }
 
 function findings(record, look) {
