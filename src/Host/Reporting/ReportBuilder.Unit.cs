@@ -22,16 +22,17 @@ public static partial class ReportBuilder
             ("Readings", FormattableString.Invariant($"{info.Readings:#,0}{(info.Lost > 0 ? $", {info.Lost:#,0} lost" : "")}")),
             ("Bench", info.Bench),
         };
+        facts.Add(("Recorded by", info.Software.Length > 0 ? info.Software : Said.Unknown));
         if (info.ResumedFrom is { } earlier)
         {
             facts.Add(("Carries on", $"run {earlier}"));
         }
 
-        facts.AddRange(Meters(record.ConfigurationJson).Select(meter => ("Meter", meter)));
+        facts.AddRange(Meters(record.ConfigurationJson));
         return new("Unit, bench and meter", [new ReportFacts(facts)]);
     }
 
-    private static IEnumerable<string> Meters(string configurationJson)
+    private static IEnumerable<(string, string)> Meters(string configurationJson)
     {
         BenchOptions? bench;
         try
@@ -48,8 +49,9 @@ public static partial class ReportBuilder
         {
             var accuracy = FormattableString.Invariant($"±({meter.Accuracy.PercentOfReading} % + {meter.Accuracy.Counts} counts of {meter.Accuracy.CountSize})");
             var response = meter.Response == "trueRms" ? "true RMS" : "not true RMS";
-            yield return FormattableString.Invariant(
-                $"{meter.Name}: {(meter.Quantity == Acquisition.Quantity.LineCurrent ? "line current" : "mains voltage")}, {meter.ReadingsPerSecond}/s, {response}, {meter.Coupling} coupled, {accuracy}");
+            yield return (
+                meter.Quantity == Acquisition.Quantity.LineCurrent ? "Line meter" : "Mains meter",
+                FormattableString.Invariant($"{meter.Name}: {meter.ReadingsPerSecond}/s, {response}, {meter.Coupling} coupled, {accuracy}"));
         }
     }
 

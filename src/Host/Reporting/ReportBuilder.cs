@@ -16,6 +16,7 @@ public static partial class ReportBuilder
     public static ReportContent Build(SoakStore store, string run, DateTimeOffset made)
     {
         var record = store.Run(run);
+        record = record with { Gaps = Silences.AllGaps(store, record) };
         var figures = RunFigures.Of(store, run);
         var sections = new List<ReportSection>
         {
@@ -38,7 +39,7 @@ public static partial class ReportBuilder
         sections.AddRange(Attachments(store, record));
         return new ReportContent(
             run, "Soak record", Subtitle(record), record.Info.Verdict?.Text().ToUpperInvariant() ?? "GOING ON", record.Reasons,
-            sections, ReadingsDigest.Of(store, run), record.Info.Software, made);
+            sections, ReadingsDigest.Of(store, run), Product.NameAndVersion, made);
     }
 
     private static string Subtitle(RunRecord record)
@@ -49,7 +50,7 @@ public static partial class ReportBuilder
 
     private static ReportPicture Trace(SoakStore store, RunRecord record, double from, double to, double height, string caption)
     {
-        var window = store.Window(record.Info.Run, from, to, TraceBuckets);
+        var window = store.Window(record.Info.Run, from, to, TraceBuckets) with { Gaps = record.Gaps };
         var marks = new TraceMarks(
             Said.Within(record.PredictionJson, "band", "lowAmps"), Said.Within(record.PredictionJson, "band", "highAmps"),
             Said.Within(record.PredictionJson, "steady", "lineAmps"),
@@ -74,7 +75,7 @@ public static partial class ReportBuilder
 
         return new("Findings", [new ReportTable(
             ["no.", "signature", "severity", "began", "raised", "cleared", "what is seen and what to look at first"],
-            [0.045, 0.185, 0.095, 0.09, 0.09, 0.09, 0.5],
+            [0.055, 0.185, 0.095, 0.09, 0.09, 0.09, 0.495],
             [.. record.Findings.Select(finding => (IReadOnlyList<string>)
                 [$"{finding.Number}", finding.Signature.Text(), finding.Severity.Text(), Said.At(finding.OnsetSeconds), Said.At(finding.RaisedSeconds),
                     finding.ClearedSeconds is { } cleared ? Said.At(cleared) : "stands", finding.Explanation])],
@@ -87,7 +88,7 @@ public static partial class ReportBuilder
         [0.1, 0.2, 0.12, 0.18, 0.24, 0.16],
         [.. record.AlertChanges.Select(change => (IReadOnlyList<string>)
             [Said.At(change.Seconds), change.Utc.UtcDateTime.ToString("yyyy-MM-dd HH:mm:ss", System.Globalization.CultureInfo.InvariantCulture),
-                change.Alert, change.Transition, change.State, change.By ?? "watch"])],
+                change.Alert, change.Transition, Said.Words(change.State), change.By ?? "watch"])],
         new HashSet<int>())]);
 
     private static ReportSection Gaps(RunRecord record)

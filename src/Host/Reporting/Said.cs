@@ -35,6 +35,10 @@ internal static class Said
 
     public static string Utc(DateTimeOffset? utc) => utc?.UtcDateTime.ToString("yyyy-MM-dd HH:mm:ss 'UTC'", CultureInfo.InvariantCulture) ?? Unknown;
 
+    /// <summary>A state's name as words: ReturnedUnacknowledged and returned-unacknowledged both become returned unacknowledged.</summary>
+    public static string Words(string name) => string.Concat(name.Select((letter, index) =>
+        char.IsUpper(letter) ? $"{(index > 0 && char.IsLower(name[index - 1]) ? " " : "")}{char.ToLowerInvariant(letter)}" : letter == '-' ? " " : letter.ToString()));
+
     /// <summary>A number within a JSON document; NaN where it is not there.</summary>
     public static double Within(string? json, params string[] path)
     {

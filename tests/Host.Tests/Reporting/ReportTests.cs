@@ -113,6 +113,27 @@ public sealed class ReportTests : IDisposable
     }
 
     [Fact]
+    public async Task Build_TimeThatNobodyPolled_IsNotCalledWatched()
+    {
+        using var store = SoakStore.Open(_folder.Path, TimeProvider.System);
+        var run = await store.BeginRunAsync(SoakStoreTests.Start());
+        for (var i = 0; i < 200; i++)
+        {
+            run.Append(new LineReading((i * 0.5) + (i < 100 ? 0 : 30), 0.4, 4));
+        }
+
+        await run.EndAsync(new RunEnd(Verdict.Passed, []));
+        var gaps = ReportBuilder.Build(store, run.Run, DateTimeOffset.UnixEpoch).Sections.Single(section => section.Heading == "Time without readings");
+        var row = Assert.Single(gaps.Blocks.OfType<ReportTable>().Single().Rows);
+        Assert.Equal(["0:00:49", "0:01:20", "30.5 s", "not-polled"], row.Take(4));
+    }
+
+    [Theory]
+    [InlineData("ReturnedUnacknowledged", "returned unacknowledged")]
+    [InlineData("returned-unacknowledged", "returned unacknowledged")]
+    public void Words_OfAState_AreWords(string name, string told) => Assert.Equal(told, Said.Words(name));
+
+    [Fact]
     public async Task Report_OfARunGoingOnOrEmpty_IsStillWritten()
     {
         using var store = SoakStore.Open(_folder.Path, TimeProvider.System);

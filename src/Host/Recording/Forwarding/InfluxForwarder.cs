@@ -16,7 +16,7 @@ public sealed record ForwardingHealth(long Sent, long Parked, string? Trouble, b
 /// </summary>
 public sealed class InfluxForwarder : IDisposable
 {
-    private const int BatchPoints = 5_000;
+    private const int BatchPoints = 10_000;
     private const int ParkedOneByOne = 50;
     private static readonly TimeSpan LongestWait = TimeSpan.FromSeconds(30);
 

@@ -9,12 +9,22 @@ internal sealed class BlockSetter(PageFlow flow, TextSetter text)
     private const float SmallSize = 8;
     private const float HeadingSize = 12.5f;
 
+    // A table up to this height is not cut by a page's end.
+    private const float LongTable = 260;
+    private const float HeadingSpace = 40;
+    private const float Padding = 9;
+
     private static readonly SKColor Faint = new(0x55, 0x55, 0x55);
 
     public void Set(ReportSection section)
     {
         // A heading never stands alone at the foot of a page.
-        flow.Need(section.Blocks is [ReportPicture picture, ..] ? 40 + (flow.Width * (float)picture.Height) : 74);
+        flow.Need(HeadingSpace + section.Blocks switch
+        {
+            [ReportPicture picture, ..] => flow.Width * (float)picture.Height,
+            [ReportTable table, ..] => Math.Min(Height(table), LongTable),
+            _ => 34,
+        });
         flow.Down(flow.IsAtTop ? 0 : 9);
         flow.Down(HeadingSize + 3);
         text.Draw(flow.Canvas, section.Heading, flow.Left, flow.Y, HeadingSize, bold: true);
@@ -89,9 +99,7 @@ internal sealed class BlockSetter(PageFlow flow, TextSetter text)
 
     private void Table(ReportTable table)
     {
-        const float padding = 9;
-        var whole = table.Widths.Sum();
-        var widths = table.Widths.Select(share => (float)(share / whole) * flow.Width).ToList();
+        var widths = Widths(table);
         Row(table.Headers, bold: true);
         Rule(0.6f, SKColors.Black);
         foreach (var row in table.Rows)
@@ -104,8 +112,8 @@ internal sealed class BlockSetter(PageFlow flow, TextSetter text)
 
         void Row(IReadOnlyList<string> cells, bool bold)
         {
-            var broken = cells.Select((cell, index) => text.Break(cell, widths[index] - padding, SmallSize + 0.6f, bold)).ToList();
-            var height = (broken.Max(lines => lines.Count) * TextSetter.LineHeight(SmallSize + 0.6f)) + 3;
+            var broken = Broken(cells, widths, bold);
+            var height = RowHeight(broken);
             flow.Need(height);
             var x = flow.Left;
             for (var index = 0; index < cells.Count; index++)
@@ -114,7 +122,7 @@ internal sealed class BlockSetter(PageFlow flow, TextSetter text)
                 for (var line = 0; line < broken[index].Count; line++)
                 {
                     var baseline = flow.Y + ((line + 1) * TextSetter.LineHeight(SmallSize + 0.6f)) - 2.2f;
-                    text.Draw(flow.Canvas, broken[index][line], numeric ? x + widths[index] - padding : x, baseline, SmallSize + 0.6f, bold, numeric ? SKTextAlign.Right : SKTextAlign.Left);
+                    text.Draw(flow.Canvas, broken[index][line], numeric ? x + widths[index] - Padding : x, baseline, SmallSize + 0.6f, bold, numeric ? SKTextAlign.Right : SKTextAlign.Left);
                 }
 
                 x += widths[index];
@@ -123,6 +131,16 @@ internal sealed class BlockSetter(PageFlow flow, TextSetter text)
             flow.Down(height);
         }
     }
+
+    private List<float> Widths(ReportTable table) => [.. table.Widths.Select(share => (float)(share / table.Widths.Sum()) * flow.Width)];
+
+    private List<List<string>> Broken(IReadOnlyList<string> cells, List<float> widths, bool bold) =>
+        [.. cells.Select((cell, index) => text.Break(cell, widths[index] - Padding, SmallSize + 0.6f, bold))];
+
+    private static float RowHeight(List<List<string>> broken) => (broken.Max(lines => lines.Count) * TextSetter.LineHeight(SmallSize + 0.6f)) + 3;
+
+    private float Height(ReportTable table) =>
+        table.Rows.Prepend(table.Headers).Sum(row => RowHeight(Broken(row, Widths(table), bold: row == table.Headers)) + 1);
 
     private void Picture(ReportPicture block)
     {

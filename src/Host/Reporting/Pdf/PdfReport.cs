@@ -26,7 +26,7 @@ public static class PdfReport
             Title = $"{content.Title} {content.Run}",
             Subject = content.Subtitle,
             Author = "",
-            Creator = $"Lampwarden {content.Software}",
+            Creator = content.Software,
             // 'report --verify' finds the check sum here.
             Keywords = $"{ReportVerification.Mark}{content.ReadingsSha256}",
             Creation = content.Made.UtcDateTime,
@@ -86,7 +86,7 @@ public static class PdfReport
         using var rule = new SKPaint { Color = Faint, StrokeWidth = 0.5f };
         canvas.DrawLine(left, y - 11, right, y - 11, rule);
         var made = content.Made.UtcDateTime.ToString("yyyy-MM-dd HH:mm 'UTC'", CultureInfo.InvariantCulture);
-        text.Draw(canvas, $"{content.Title} {content.Run}, made {made} by Lampwarden {content.Software}", left, y, 7.5f, colour: Faint);
+        text.Draw(canvas, $"{content.Title} {content.Run}, made {made} by {content.Software}", left, y, 7.5f, colour: Faint);
         text.Draw(canvas, $"page {page} of {pages}", right, y, 7.5f, align: SKTextAlign.Right, colour: Faint);
         text.Draw(canvas, $"SHA-256 of the readings {content.ReadingsSha256}", left, y + 10, 7.5f, colour: Faint);
     }

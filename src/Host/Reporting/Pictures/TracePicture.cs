@@ -19,6 +19,10 @@ public sealed class TracePicture(RunWindow window, TraceMarks marks) : IPicture
     private static readonly Color Body = Color.FromHex("#9a9a9a");
     private static readonly Color BandFill = Color.FromHex("#e9efe9");
     private static readonly Color BandEdge = Color.FromHex("#5c6f5c");
+    private const int LabelRows = 3;
+    private const double LabelWidthShare = 0.032;
+    private const double LabelRowShare = 0.115;
+
     private static readonly Color GapFill = Color.FromHex("#d9d9d9");
 
     /// <inheritdoc/>
@@ -137,7 +141,10 @@ public sealed class TracePicture(RunWindow window, TraceMarks marks) : IPicture
 
     private void DrawMarks(Plot plot, double scale)
     {
-        foreach (var (seconds, label) in marks.Marks)
+        // Labels that would cover each other go one row down, and after the last row stay away: the line is there, and the table.
+        var rowsTaken = Enumerable.Repeat(double.NegativeInfinity, LabelRows).ToArray();
+        var room = (window.ToSeconds - window.FromSeconds) * LabelWidthShare;
+        foreach (var (seconds, label) in marks.Marks.OrderBy(mark => mark.Seconds))
         {
             if (seconds < window.FromSeconds || seconds > window.ToSeconds)
             {
@@ -145,7 +152,14 @@ public sealed class TracePicture(RunWindow window, TraceMarks marks) : IPicture
             }
 
             plot.Add.VerticalLine(seconds / scale, 1.4f, Ink, LinePattern.DenselyDashed);
-            var text = plot.Add.Text(label, seconds / scale, Top() * 0.985);
+            var row = Array.FindIndex(rowsTaken, taken => seconds - taken >= room);
+            if (row < 0)
+            {
+                continue;
+            }
+
+            rowsTaken[row] = seconds;
+            var text = plot.Add.Text(label, seconds / scale, Top() * (0.985 - (row * LabelRowShare)));
             text.LabelFontName = ReportFonts.Family;
             text.LabelFontSize = 13;
             text.LabelBold = true;
