@@ -85,4 +85,7 @@ internal static partial class Log
 
     [LoggerMessage(EventId = 504, EventName = "CutOffNotStored", Level = LogLevel.Error, Message = "{Bench}: the state of the cut-off could not be stored")]
     public static partial void CutOffNotStored(ILogger logger, Exception error, string bench);
+
+    [LoggerMessage(EventId = 110, EventName = "SoakResumed", Level = LogLevel.Warning, Message = "{Bench}: carries on run {Earlier}, left off at {LeftOffSeconds:F0} s, now at {NowSeconds:F0} s")]
+    public static partial void SoakResumed(ILogger logger, string bench, string earlier, double leftOffSeconds, double nowSeconds);
 }

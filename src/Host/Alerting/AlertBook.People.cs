@@ -44,34 +44,37 @@ public sealed partial class AlertBook
     public AlertChange? Unshelve(int number, double seconds, string? by = null) =>
         Numbered(number) is { Alert.State: AlertState.Shelved } entry ? LeaveShelf(entry, seconds, by) : null;
 
-    /// <summary>
-    /// Takes over the open alerts of an interrupted run. Their conditions are taken as standing until the off-delay has
-    /// passed without them: the watch raises again what is still there.
-    /// </summary>
+    /// <summary>Takes over the open alerts of a run that is carried on, on the same clock.</summary>
     /// <param name="alerts">As last stored, in any order.</param>
-    /// <param name="earlierSeconds">Seconds between the start of the interrupted run and the start of this one.</param>
-    public void TakeOver(IEnumerable<Alert> alerts, double earlierSeconds)
+    /// <param name="findings">What the watch has found up to now: says which conditions still stand.</param>
+    /// <param name="seconds">Now.</param>
+    public void TakeOver(IEnumerable<Alert> alerts, IEnumerable<Finding> findings, double seconds)
     {
-        foreach (var alert in alerts.Where(alert => alert.IsOpen).OrderBy(alert => alert.Number))
+        var standing = findings.Where(finding => finding.ClearedSeconds is null).ToDictionary(finding => finding.Number);
+        foreach (var alert in alerts.OrderBy(alert => alert.Number))
         {
-            var entry = new AlertEntry(alert with
+            _numbers = Math.Max(_numbers, alert.Number);
+            var stands = alert.FindingNumber is { } number && standing.ContainsKey(number);
+            if (!alert.IsOpen)
             {
-                FindingNumber = null,
-                Standing = false,
-                RaisedSeconds = alert.RaisedSeconds - earlierSeconds,
-                ShelvedUntilSeconds = alert.ShelvedUntilSeconds - earlierSeconds,
-            })
-            {
-                OffDueSeconds = alert.State is AlertState.Unacknowledged or AlertState.Acknowledged or AlertState.Shelved
-                    ? _rules.OffDelaySeconds
-                    : double.NaN,
-            };
-            if (alert.IsUnacknowledged)
-            {
-                PlanRepeat(entry, 0);
+                continue;
             }
 
-            _numbers = Math.Max(_numbers, alert.Number);
+            var entry = new AlertEntry(alert with { Standing = stands });
+            if (stands)
+            {
+                _byFinding[alert.FindingNumber!.Value] = entry;
+            }
+            else if (alert.State is AlertState.Unacknowledged or AlertState.Acknowledged)
+            {
+                entry.OffDueSeconds = seconds + _rules.OffDelaySeconds;
+            }
+
+            if (alert.IsUnacknowledged)
+            {
+                PlanRepeat(entry, seconds);
+            }
+
             _entries.Add(entry);
         }
     }

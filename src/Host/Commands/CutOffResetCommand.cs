@@ -38,7 +38,7 @@ internal sealed class CutOffResetCommand : CliCommand
         }
 
         var file = new CutOffFile(parsed.GetValue(_record) ?? options.Recording.Folder, bench);
-        await File.WriteAllTextAsync(file.ResetPath, parsed.GetValue(_by), cancellation);
+        file.Wish(parsed.GetValue(_by)!);
         for (var waited = TimeSpan.Zero; waited < Patience && File.Exists(file.ResetPath); waited += TimeSpan.FromMilliseconds(200))
         {
             await Task.Delay(TimeSpan.FromMilliseconds(200), cancellation);

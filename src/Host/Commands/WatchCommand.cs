@@ -17,6 +17,8 @@ internal sealed class WatchCommand : CliCommand
     private readonly Option<bool> _noPage = CommonOptions.NoPage();
     private readonly Option<string?> _duration = new("--duration") { Description = "Stop by itself after this time, such as 90s or 12h", HelpName = "T" };
 
+    private readonly Option<bool> _resume = new("--resume") { Description = "Carry on the runs that the service left off lately, by a stop or a crash" };
+
     public WatchCommand()
         : base("watch", "Watch the benches of the configuration: record, alert, judge")
     {
@@ -24,6 +26,7 @@ internal sealed class WatchCommand : CliCommand
         Add(_record);
         Add(_noPage);
         Add(_duration);
+        Add(_resume);
     }
 
     protected override async Task<int> RunAsync(ParseResult parsed, Terminal terminal, CancellationToken cancellation)
@@ -50,7 +53,8 @@ internal sealed class WatchCommand : CliCommand
         var documents = await SoakHost.RunAsync(
             plans, parsed.GetValue(_record) ?? options.Recording.Folder, TimeProvider.System, [], logToConsole: true, started: null,
             address is null ? null : new PageOrder(address, inventory, StaysOpen: true, MayFail: false, terminal.Prose),
-            new AttendanceOrder(options, parsed.GetValue(_config)!),
+            new AttendanceOrder(
+                options, parsed.GetValue(_config)!, parsed.GetValue(_resume) ? TimeSpan.FromMinutes(options.Unattended.ResumeWithinMinutes) : null),
             ending.Token,
             options.Recording.Influx);
         Finish(terminal, documents);

@@ -20,6 +20,10 @@ public sealed class UnattendedOptions
     /// <summary>Whether a process with a stuck loop ends itself, for the service manager to start it again.</summary>
     public bool EndWhenStuck { get; set; } = true;
 
+    /// <summary>Minutes since a run was left off within which watch --resume carries it on; 1 to 1440.</summary>
+    [Range(1.0, 1440.0)]
+    public double ResumeWithinMinutes { get; set; } = 60;
+
     /// <summary>Address of an OpenTelemetry collector that takes metrics over OTLP (http/protobuf); null for none.</summary>
     [Url]
     public string? OtlpUrl { get; set; }

@@ -16,7 +16,7 @@ namespace Lampwarden.Host.Soaking;
 public sealed record SoakRequest(string Unit, string Bank, double PlannedHours, string? UnitLabel = null, bool BringUp = false);
 
 /// <summary>One bench over time: a soak, and where a page can start others, the time between them. Its members are safe from any thread.</summary>
-public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, SoakStore store, SoakSurroundings around, bool staysOpen)
+public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, SoakStore store, SoakSurroundings around, bool staysOpen, TimeSpan? resumeWithin = null)
 {
     private BenchPlan? _plan;
 
@@ -101,6 +101,13 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
     public async Task RunAsync(Action<SoakDocument> closed, CancellationToken stop)
     {
         (BenchPlan Plan, BringUp? BringUp)? next = configured.Options.Soak.StartFrom == "page" && staysOpen ? null : (configured, null);
+        var resumption = resumeWithin is { } within ? SoakResumption.Find(store, Name, within, around.Time.GetUtcNow()) : null;
+        if (resumption is not null)
+        {
+            var last = resumption.Last;
+            next = (BenchPlan.From(configured.Options.With(last.Bank, last.Unit, last.PlannedHours, last.UnitLabel), inventory), null);
+        }
+
         while (!stop.IsCancellationRequested)
         {
             if (next is null)
@@ -113,8 +120,8 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
                 next = request;
             }
 
-            await SoakAsync(next.Value.Plan, next.Value.BringUp, closed, stop);
-            next = null;
+            await SoakAsync(next.Value.Plan, next.Value.BringUp, resumption, closed, stop);
+            (next, resumption) = (null, null);
             if (!staysOpen)
             {
                 return;
@@ -122,21 +129,21 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
         }
     }
 
-    private async Task SoakAsync(BenchPlan plan, BringUp? bringUp, Action<SoakDocument> closed, CancellationToken stop)
+    private async Task SoakAsync(BenchPlan plan, BringUp? bringUp, SoakResumption? resumption, Action<SoakDocument> closed, CancellationToken stop)
     {
         using var ending = CancellationTokenSource.CreateLinkedTokenSource(stop);
         lock (_gate)
         {
             _ending = ending;
             Volatile.Write(ref _plan, plan);
-            Soak = new Soak(plan, store, around, bringUp);
+            Soak = new Soak(plan, store, around, bringUp, resumption);
         }
 
         Tell(new PlanChanged(Name, bringUp?.Plan ?? plan));
         Tell(new DeskChanged(Name, Idle: false, CanStart: false, CanEnd: staysOpen));
         try
         {
-            if (await Soak.RunAsync(ending.Token) is { } document)
+            if (await Soak.RunAsync(ending.Token, stop) is { } document)
             {
                 closed(document);
             }

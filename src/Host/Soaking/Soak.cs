@@ -25,6 +25,7 @@ public sealed class Soak
         new BoundedChannelOptions(4096) { SingleReader = true, FullMode = BoundedChannelFullMode.Wait });
 
     private readonly BringUp? _bringUp;
+    private readonly SoakResumption? _resumption;
 
     private RunRecorder? _recorder;
     private Action<AlertChange>? _tell;
@@ -36,22 +37,25 @@ public sealed class Soak
     /// <param name="store">Takes the run.</param>
     /// <param name="around">Clock, log, routes, listeners.</param>
     /// <param name="bringUp">Where the bank is switched in lamp by lamp: the steps; the last is the plan's own bank.</param>
-    public Soak(BenchPlan plan, SoakStore store, SoakSurroundings around, BringUp? bringUp = null)
+    /// <param name="resumption">The run that this one carries on; null for a soak of its own.</param>
+    public Soak(BenchPlan plan, SoakStore store, SoakSurroundings around, BringUp? bringUp = null, SoakResumption? resumption = null)
     {
         if (plan.Options.UnitModel is { } model)
         {
             plan = plan.HeldTo(ReferenceUnits.BandFor(store, model, plan.Bank.Text, plan.Mains.ToString(), plan.Prediction.Steady.LineAmps));
         }
 
-        (_plan, _store, _around, _bringUp) = (plan, store, around, bringUp);
+        (_plan, _store, _around, _bringUp, _resumption) = (plan, store, around, bringUp, resumption);
         _ledger = new SoakLedger(bringUp is null ? plan.WatchSettings : plan.WatchSettings with { Expectation = bringUp.Plan.WatchSettings.Expectation });
         _alerts = new AlertBook(plan.Name, around.Rules);
         _meters = new MeterRoll(plan, around);
     }
 
     /// <summary>Runs until the planned hours are over or <paramref name="stop"/> says so; either way the run is closed and stored.</summary>
+    /// <param name="stop">Ends the soak.</param>
+    /// <param name="serviceStop">Ended too where it is the service that ends: the run can then be carried on later.</param>
     /// <returns>What came of it; null where it was stopped before any current flowed.</returns>
-    public async Task<SoakDocument?> RunAsync(CancellationToken stop)
+    public async Task<SoakDocument?> RunAsync(CancellationToken stop, CancellationToken serviceStop = default)
     {
         Log.WaitingForSwitchOn(_around.Logger, _plan.Name, _plan.Options.Soak.SwitchOnWaitSeconds);
         await using var teller = new AlertTeller(_around.Routes, FlushAsync, _around.Logger);
@@ -86,7 +90,7 @@ public sealed class Soak
         }
 
         await teller.DisposeAsync();
-        return _recorder is null ? null : await CloseAsync();
+        return _recorder is null ? null : await CloseAsync(serviceStop.IsCancellationRequested);
     }
 
     /// <summary>The run's id; null before it began. Safe from any thread.</summary>
@@ -164,7 +168,7 @@ public sealed class Soak
     {
         _firstPollSeconds = double.IsNaN(_firstPollSeconds) ? look.ElapsedSeconds : _firstPollSeconds;
         var waitedSeconds = look.ElapsedSeconds - _firstPollSeconds;
-        if (!(look.LineAmps > _plan.SwitchedOnAmps) && waitedSeconds < _plan.Options.Soak.SwitchOnWaitSeconds)
+        if (_resumption is null && !(look.LineAmps > _plan.SwitchedOnAmps) && waitedSeconds < _plan.Options.Soak.SwitchOnWaitSeconds)
         {
             Tell(new WaitingForSwitchOn(_plan.Name, look.LineAmps));
             return false;
@@ -172,6 +176,7 @@ public sealed class Soak
 
         // Current flowed for some part of this reading's window: the window's start is the latest sure time before it.
         _originSeconds = look.ElapsedSeconds - _plan.LineMeter.WindowSeconds;
+        var leftOffSeconds = _resumption is null ? double.NaN : CarryOn(_resumption, look);
         var start = new RunStart
         {
             Bench = _plan.Name,
@@ -182,11 +187,18 @@ public sealed class Soak
             ConfigurationJson = JsonSerializer.Serialize(_plan.Options, Json.Compact),
             PredictionJson = JsonSerializer.Serialize(_plan.Prediction, Json.Compact),
             Software = Product.NameAndVersion,
-            StartedUtc = look.Utc,
+            StartedUtc = _resumption?.StartedUtc ?? look.Utc,
             UnitLabel = _plan.Options.UnitLabel,
         };
-        var recorder = await _store.BeginRunAsync(start with { ResumedFrom = _store.TakeInterrupted(start) }, stop);
+        var recorder = await _store.BeginRunAsync(start with { ResumedFrom = _resumption?.Last.Run ?? _store.TakeInterrupted(start) }, stop);
         _recorder = recorder;
+        if (_resumption is not null)
+        {
+            var until = Math.Max(leftOffSeconds, look.ElapsedSeconds - _originSeconds - _plan.LineMeter.WindowSeconds);
+            recorder.AppendMissed(new LineReading(until, double.NaN), SoakResumption.GapReason, "the service did not run");
+            Log.SoakResumed(_around.Logger, _plan.Name, _resumption.Last.Run, leftOffSeconds, look.ElapsedSeconds - _originSeconds);
+        }
+
         Log.SoakStarted(_around.Logger, _plan.Name, recorder.Run, _plan.Unit.Text, _plan.Bank.Text, _plan.Mains.ToString());
         Tell(new RunBegan(_plan.Name, recorder.Run, _bringUp?.Plan ?? _plan, look.Utc));
         if (_bringUp is not null)
@@ -195,6 +207,18 @@ public sealed class Soak
         }
 
         return true;
+    }
+
+    /// <summary>Sets the clock and the watch to where the earlier run was left off.</summary>
+    /// <returns>Seconds of its last entry.</returns>
+    private double CarryOn(SoakResumption resumption, in BenchLook look)
+    {
+        var leftOff = resumption.Replay(_ledger);
+        resumption.TakeOver(_alerts, _ledger);
+        // The monotonic clock does not outlive the process. A wall clock set back must not make the soak's time go backwards.
+        var nowSeconds = Math.Max(leftOff + _plan.LineMeter.WindowSeconds, (look.Utc - resumption.StartedUtc).TotalSeconds);
+        _originSeconds = look.ElapsedSeconds - nowSeconds;
+        return leftOff;
     }
 
     private void Observe(in LineReading kept, in BenchLook look)
@@ -287,9 +311,14 @@ public sealed class Soak
 
     private Task FlushAsync(CancellationToken cancellation) => _recorder?.FlushAsync(cancellation) ?? Task.CompletedTask;
 
-    private async Task<SoakDocument> CloseAsync()
+    private async Task<SoakDocument> CloseAsync(bool serviceStops)
     {
         var (document, judgement) = _ledger.Close(_ledger.LastSeconds);
+        if (serviceStops && judgement.Verdict == Verdict.Incomplete)
+        {
+            judgement = judgement with { Reasons = [.. judgement.Reasons, SoakResumption.StoppedReason] };
+        }
+
         var end = new RunEnd(judgement.Verdict, judgement.Reasons, JsonSerializer.Serialize(judgement.Summary, Json.Compact), _ledger.LastSeconds);
         if (!await _recorder!.EndAsync(end))
         {

@@ -15,7 +15,8 @@ namespace Lampwarden.Host.Unattended;
 /// <summary>How a command wants the service attended.</summary>
 /// <param name="Options">The whole configuration.</param>
 /// <param name="Path">The file it came from, to be read again when it changes; null for none.</param>
-public sealed record AttendanceOrder(LampwardenOptions Options, string? Path = null);
+/// <param name="ResumeWithin">How long ago a run may have been left off to be carried on; null: every soak is a new one.</param>
+public sealed record AttendanceOrder(LampwardenOptions Options, string? Path = null, TimeSpan? ResumeWithin = null);
 
 /// <summary>
 /// Everything that makes a person hear of an alert, and somebody notice when the watcher dies: routes, cut-off, heartbeat,

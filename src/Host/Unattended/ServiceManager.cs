@@ -22,7 +22,8 @@ public sealed class ServiceManager : IDisposable
         {
             // A leading @ stands for the zero byte of an abstract address.
             _place = new UnixDomainSocketEndPoint(path[0] == '@' ? "\0" + path[1..] : path);
-            _socket = new Socket(AddressFamily.Unix, SocketType.Dgram, ProtocolType.Unspecified);
+            // A manager that does not read its socket must not hold up the one who says that all is well.
+            _socket = new Socket(AddressFamily.Unix, SocketType.Dgram, ProtocolType.Unspecified) { Blocking = false };
         }
 
         // WATCHDOG_PID, where set, says whose watchdog it is (sd_watchdog_enabled(3)).

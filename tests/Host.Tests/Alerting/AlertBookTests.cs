@@ -228,17 +228,17 @@ public sealed class AlertBookTests
     }
 
     [Fact]
-    public void TakeOver_OfAnInterruptedRun_KeepsWhatStandsAndReturnsWhatIsGone()
+    public void TakeOver_OfACarriedOnRun_KeepsWhatStandsAndReturnsWhatIsGone()
     {
-        _book.Take(Change(ChangeKind.Raised, 1, Signature.HardShort, Severity.Critical), 100);
-        _book.Take(Change(ChangeKind.Raised, 2), 110);
+        var (stays, goes) = (Change(ChangeKind.Raised, 1, Signature.HardShort, Severity.Critical), Change(ChangeKind.Raised, 2));
+        _book.Take(stays, 100);
+        _book.Take(goes, 110);
         _book.Acknowledge(2, 120, "Kim");
         var next = new AlertBook("bay-3");
-        next.TakeOver(_book.Alerts, 500);
-        // The watch finds the short again, and not the other.
-        Assert.Null(next.Take(Change(ChangeKind.Raised, 1, Signature.HardShort, Severity.Critical), 20));
-        Assert.Equal(2, Assert.Single(next.Tick(60)).Alert.Number);
-        Assert.Equal(1, Assert.Single(next.Tick(301)).Alert.Repeats);
-        Assert.Equal(3, next.Take(Change(ChangeKind.Raised, 2, Signature.LampOut), 400)!.Alert.Number);
+        next.TakeOver(_book.Alerts, [stays.Finding, goes.Finding with { ClearedSeconds = 130 }], 500);
+        Assert.Null(next.Take(stays with { Kind = ChangeKind.Amended }, 510));
+        Assert.Equal((2, "returned", AlertState.Normal), Assert.Single(next.Tick(560)) is var gone ? (gone.Alert.Number, gone.What, gone.Alert.State) : default);
+        Assert.Equal(1, Assert.Single(next.Tick(800)).Alert.Repeats);
+        Assert.Equal(3, next.Take(Change(ChangeKind.Raised, 3, Signature.LampOut), 900)!.Alert.Number);
     }
 }

@@ -40,6 +40,14 @@ public sealed class CutOffFile
     /// <summary>A person's wish to reset lies here until it is carried out.</summary>
     public string ResetPath => Path.Combine(_folder, _name + ".reset.json");
 
+    /// <summary>Lays down a person's wish to reset, whole or not at all.</summary>
+    /// <exception cref="IOException">The disk does not take it.</exception>
+    public void Wish(string by)
+    {
+        File.WriteAllText(ResetPath + ".new", by);
+        File.Move(ResetPath + ".new", ResetPath, overwrite: true);
+    }
+
     /// <summary>The state as last stored; null where there is none. One that cannot be read counts as tripped.</summary>
     public CutOffState? Load()
     {

@@ -1,0 +1,118 @@
+using System.Text.Json;
+using Lampwarden.Analysis.Watching;
+using Lampwarden.Host.Recording;
+using Lampwarden.Host.Soaking;
+using Lampwarden.Host.Tests.Alerting;
+using Lampwarden.Host.Tests.Alerting.Routes;
+using Lampwarden.Host.Tests.Recording;
+
+namespace Lampwarden.Host.Tests.Unattended;
+
+/// <summary>What the world sees of the process when it starts, is stopped, dies, and comes back.</summary>
+public sealed class ServiceProcessTests : IDisposable
+{
+    private readonly TempFolder _folder = new();
+
+    public ServiceProcessTests() => Outside.Need(!OperatingSystem.IsWindows(), "the process is ended by signals");
+
+    public void Dispose() => _folder.Dispose();
+
+    [Fact]
+    public async Task Watch_KilledHard_TheBrokerItselfTellsAForeignSubscriber()
+    {
+        using var broker = new Broker();
+        await broker.StartAsync();
+        await using var rig = ServiceProcess.Rig();
+        using var watcher = broker.Subscribe("shop/one/status");
+        await using var service = await ServiceProcess.StartAsync(_folder, rig, $$"""
+            , "alerts": { "routes": [ { "kind": "mqtt", "mqtt": { "host": "127.0.0.1", "port": {{broker.Port}}, "topic": "shop/one" } } ] }
+            """);
+        await watcher.UntilAsync(line => line == "shop/one/status online");
+        await service.KillAsync();
+        await watcher.UntilAsync(line => line == "shop/one/status offline");
+    }
+
+    [Theory]
+    [InlineData(true)]
+    [InlineData(false)]
+    public async Task Watch_StoppedOrKilledAndStartedAgain_CarriesTheRunOnWithAGapOnRecord(bool killed)
+    {
+        await using var rig = ServiceProcess.Rig();
+        await using (var service = await ServiceProcess.StartAsync(_folder, rig))
+        {
+            await ServiceProcess.AskedAsync(rig, 25);
+            await (killed ? service.KillAsync() : service.SignalAsync("TERM"));
+        }
+
+        var asked = rig.Asked;
+        await using (var service = await ServiceProcess.StartAsync(_folder, rig, words: ["--no-page", "--resume"]))
+        {
+            await ServiceProcess.AskedAsync(rig, asked + 15);
+            await service.SignalAsync("TERM");
+        }
+
+        using var store = SoakStore.Open(_folder.Path, TimeProvider.System, StoreMode.Review);
+        var (second, first) = (store.Runs().OrderBy(run => run.Run, StringComparer.Ordinal).ToList() is [var a, var b] ? (b, a) : throw new InvalidOperationException("two runs were expected"));
+        Assert.Equal(first.Run, second.ResumedFrom);
+        Assert.Equal(first.StartedUtc, second.StartedUtc);
+        var gap = Assert.Single(store.Run(second.Run).Gaps, gap => gap.Reason == SoakResumption.GapReason);
+        Assert.True(gap.ToSeconds > first.LengthSeconds);
+        var readings = store.Readings(second.Run).Where(reading => !reading.IsMissing).ToList();
+        Assert.True(readings[0].Seconds >= gap.ToSeconds);
+        // A short absence of the service is not a fault of the bench.
+        Assert.DoesNotContain(store.Run(second.Run).Findings, finding => finding.Severity == Severity.Critical);
+    }
+
+    [Fact]
+    public async Task Watch_StartedAgainWithoutResume_BeginsAnew()
+    {
+        await using var rig = ServiceProcess.Rig();
+        for (var start = 1; start <= 2; start++)
+        {
+            var asked = rig.Asked;
+            await using var service = await ServiceProcess.StartAsync(_folder, rig);
+            await ServiceProcess.AskedAsync(rig, asked + 10);
+            await service.SignalAsync("TERM");
+        }
+
+        using var store = SoakStore.Open(_folder.Path, TimeProvider.System, StoreMode.Review);
+        Assert.All(store.Runs(), run => Assert.Null(run.ResumedFrom));
+    }
+
+    [Fact]
+    public async Task Watch_UnderAServiceManager_TellsItAndAnybodyWhoAsksHowItDoes()
+    {
+        var port = WebhookRouteTests.FreePort();
+        using var socket = new NotifySocket();
+        await using var rig = ServiceProcess.Rig();
+        await using var service = await ServiceProcess.StartAsync(
+            _folder, rig, $$""", "web": { "address": "http://127.0.0.1:{{port}}" } """, [], ("NOTIFY_SOCKET", socket.Path), ("WATCHDOG_USEC", "1500000"));
+        await Patience.UntilAsync(() => socket.Messages.Contains("READY=1"), looks: 3000);
+        Assert.Contains("STATUS=watching 1 bench", socket.Messages);
+        await ServiceProcess.AskedAsync(rig, 15);
+        using var client = new HttpClient { BaseAddress = new Uri($"http://127.0.0.1:{port}") };
+        await CheckHealthAsync(client);
+
+        // Settings are read again, and the run goes on.
+        await service.SignalAsync("HUP", andWait: false);
+        await Patience.UntilAsync(() => socket.Feeds >= 3, looks: 3000);
+        await ServiceProcess.AskedAsync(rig, rig.Asked + 10);
+        await service.SignalAsync("TERM");
+        Assert.Contains("STOPPING=1", socket.Messages);
+        using var store = SoakStore.Open(_folder.Path, TimeProvider.System, StoreMode.Review);
+        Assert.Single(store.Runs());
+        var log = string.Concat(Directory.GetFiles(Path.Combine(_folder.Path, "log")).Select(File.ReadAllText));
+        Assert.Contains("was read again", log, StringComparison.Ordinal);
+    }
+
+    private static async Task CheckHealthAsync(HttpClient client)
+    {
+        var health = JsonDocument.Parse(await client.GetStringAsync(new Uri("/health", UriKind.Relative), TestContext.Current.CancellationToken)).RootElement;
+        Assert.Equal("ok", health.GetProperty("status").GetString());
+        Assert.InRange(health.GetProperty("benches")[0].GetProperty("silentSeconds").GetDouble(), 0, 20);
+        var store = health.GetProperty("store");
+        Assert.Equal(store.GetProperty("accepted").GetInt64(), store.GetProperty("stored").GetInt64() + store.GetProperty("waiting").GetInt64());
+        var metrics = await client.GetStringAsync(new Uri("/metrics", UriKind.Relative), TestContext.Current.CancellationToken);
+        Assert.Contains("lampwarden_polls_total{bench=\"attic\",result=\"reading\"}", metrics, StringComparison.Ordinal);
+    }
+}
