@@ -15,6 +15,8 @@ namespace Lampwarden.Host.Soaking;
 /// </summary>
 public sealed class Soak
 {
+    private const double ReopeningSeconds = 10;
+
     private readonly BenchPlan _plan;
     private readonly SoakStore _store;
     private readonly SoakSurroundings _around;
@@ -31,6 +33,7 @@ public sealed class Soak
     private Action<AlertChange>? _tell;
     private double _originSeconds;
     private double _firstPollSeconds = double.NaN;
+    private double _excusedUntilSeconds = double.NegativeInfinity;
 
     /// <summary>Prepares a soak; nothing is opened yet.</summary>
     /// <param name="plan">Bank, unit, meters and hours.</param>
@@ -218,7 +221,22 @@ public sealed class Soak
         // The monotonic clock does not outlive the process. A wall clock set back must not make the soak's time go backwards.
         var nowSeconds = Math.Max(leftOff + _plan.LineMeter.WindowSeconds, (look.Utc - resumption.StartedUtc).TotalSeconds);
         _originSeconds = look.ElapsedSeconds - nowSeconds;
+        _excusedUntilSeconds = nowSeconds + ReopeningSeconds;
         return leftOff;
+    }
+
+    /// <summary>The watch sees the service's own absence as a silent meter; it is put on record as what it was, and wakes nobody.</summary>
+    private IReadOnlyList<FindingChange> Excuse(IReadOnlyList<FindingChange> changes)
+    {
+        if (changes.Count == 0 || !(_ledger.LastSeconds < _excusedUntilSeconds))
+        {
+            return changes;
+        }
+
+        return [.. changes.Select(change => change.Finding.Signature != Signature.MeterSilent ? change : change with
+        {
+            Finding = change.Finding with { Severity = Severity.Notice, Explanation = "The service itself did not run, so nothing was watched: see the gap." },
+        })];
     }
 
     private void Observe(in LineReading kept, in BenchLook look)
@@ -238,7 +256,9 @@ public sealed class Soak
             Follow(_bringUp.Take(observation));
         }
 
-        var changes = _ledger.Take(observation, look.Reason);
+        // While meters are being opened again the absence is the service's own, on record, and no fault of theirs.
+        var excused = observation.IsGap && observation.Seconds < _excusedUntilSeconds;
+        var changes = excused ? [] : Excuse(_ledger.Take(observation, look.Reason));
         Tell(new Observed(_plan.Name, observation, _ledger.Watch.Phase, () => _ledger.Watch.Sentence) { Utc = look.Utc });
         Publish(changes);
         foreach (var change in _alerts.Tick(observation.Seconds))
