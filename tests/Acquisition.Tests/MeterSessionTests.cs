@@ -104,6 +104,39 @@ public sealed class MeterSessionTests
     }
 
     [Fact]
+    public async Task ReadAsync_CurrentRisesFromNothing_IsPolledAsFastAsTheMeterAnswers()
+    {
+        // At one poll in five seconds forty readings would take longer than the test may.
+        await using var bench = new TestBench(TestBench.NewTerminal(), session: options =>
+        {
+            options.ReadingsPerSecond = 0.2;
+            options.SwitchOnSeconds = 600;
+        });
+        bench.World.Amps = 0;
+        Assert.Equal(0, (await bench.NextAsync()).Value);
+
+        bench.World.Amps = 1.8;
+        for (var reading = 0; reading < 40; reading++)
+        {
+            Assert.Equal(1.8, (await bench.NextAsync()).Value);
+        }
+    }
+
+    [Fact]
+    public async Task Hurry_ForAWhile_IsPolledAsFastAsTheMeterAnswers()
+    {
+        await using var bench = new TestBench(TestBench.NewTerminal(), session: options => options.ReadingsPerSecond = 0.1);
+        await bench.NextAsync();
+
+        bench.Session.Hurry(TimeSpan.FromMinutes(10));
+
+        for (var reading = 0; reading < 40; reading++)
+        {
+            Assert.Equal(0.4125, (await bench.NextAsync()).Value);
+        }
+    }
+
+    [Fact]
     public async Task ReadAsync_Cancelled_EndsWithTheTokensException()
     {
         await using var port = TestBench.NewTerminal();

@@ -52,6 +52,7 @@ public static class CommandLine
         new RehearseCommand(),
         new PredictCommand(),
         new CheckCommand(),
+        new CalibrateCommand(),
         new WatchCommand(),
         new ReplayCommand(),
         AlertsTestCommand.Group(),

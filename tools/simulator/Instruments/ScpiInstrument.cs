@@ -79,6 +79,11 @@ internal sealed class ScpiInstrument
             return "1999.0";
         }
 
+        if (ScpiHeader.Matches("MEASure[:SCALar]:RESistance", header) && !double.IsNaN(_options.ResistanceOhms))
+        {
+            return Number(_options.ResistanceOhms);
+        }
+
         if (ScpiHeader.Matches("READ", header))
         {
             return await MeasureAsync();

@@ -15,6 +15,9 @@ public sealed class SimulatedMeterOptions
     /// <summary>What it measures from power-on.</summary>
     public MeasuredQuantity Quantity { get; set; } = MeasuredQuantity.LineCurrent;
 
+    /// <summary>What MEASure:RESistance? finds between its leads, in ohms; NaN for a meter without that function.</summary>
+    public double ResistanceOhms { get; set; } = double.NaN;
+
     /// <summary>Length of its measuring window in seconds of simulated time.</summary>
     public double WindowSeconds { get; set; } = 0.2;
 
