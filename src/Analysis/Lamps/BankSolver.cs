@@ -182,10 +182,10 @@ internal sealed class BankSolver
 
                 // The curve is concave: a tangent taken far out may cross zero, where no lamp works.
                 next = Math.Max(next, 0.1 * guess);
-                worst = Math.Max(worst, Math.Abs(next - guess) / Math.Max(next, 1e-12));
+                worst = Math.Max(worst, Math.Abs(next - guess) / Math.Max(next, 1e-15));
                 volts[leaf] = next;
                 amps[leaf] = through[node];
-                guesses[leaf] = Math.Max(next, 1e-9);
+                guesses[leaf] = Math.Max(next, 1e-15);
             }
         }
 

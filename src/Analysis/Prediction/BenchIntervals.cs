@@ -32,8 +32,17 @@ internal sealed class BenchIntervals(BenchInputs inputs, BenchInputs joined, Pre
     public Interval FillSteady(BenchState healthy, BenchState shorted, double shownShare, IDictionary<string, Interval>? intervals)
     {
         var nominal = healthy.Steady;
-        var both = Spread(inputs, values => [.. healthy.Evaluator!.At(values), .. shorted.Evaluator!.At(values)], [.. nominal, .. shorted.Steady], skipTransient: true);
-        var reading = Reading(both[SteadyEvaluator.Amps], nominal[SteadyEvaluator.Amps], shownShare);
+        var both = Spread(
+            inputs,
+            values =>
+            {
+                var moved = healthy.Evaluator!.At(values);
+                return [.. moved, .. shorted.Evaluator!.At(values), moved[SteadyEvaluator.Amps]];
+            },
+            [.. nominal, .. shorted.Steady, nominal[SteadyEvaluator.Amps]],
+            skipTransient: true,
+            lastIsLinear: true);
+        var reading = Reading(both[^1], nominal[SteadyEvaluator.Amps], shownShare);
         if (intervals is null)
         {
             return reading;
@@ -58,9 +67,9 @@ internal sealed class BenchIntervals(BenchInputs inputs, BenchInputs joined, Pre
         FillPeak(shorted, intervals);
     }
 
-    private static Propagation[] Spread(BenchInputs inputs, Func<double[], double[]> model, double[] nominal, bool skipTransient)
+    private static Propagation[] Spread(BenchInputs inputs, Func<double[], double[]> model, double[] nominal, bool skipTransient, bool lastIsLinear = false)
     {
-        var outputs = nominal.Select(value => new Propagation(value)).ToArray();
+        var outputs = nominal.Select((value, index) => new Propagation(value, lastIsLinear && index == nominal.Length - 1)).ToArray();
         for (var input = 0; input < inputs.Inputs.Count; input++)
         {
             var uncertain = inputs.Inputs[input];

@@ -20,7 +20,7 @@ internal sealed class BenchState
         var response = unit.NewResponse(mains);
         if (response is MotorResponse motor)
         {
-            motor.IsLocked = !Turns(mains, bank, unit, settings);
+            motor.IsLocked = !Turns(mains, bank, unit, settings.SourceOhms);
         }
 
         var solver = new SteadySolver(bank, response, settings.SourceOhms);
@@ -80,10 +80,10 @@ internal sealed class BenchState
         return new LampState(lamp.Name, numbers[0], numbers[1], numbers[2], numbers[3], numbers[4], Transient.FirstGlowSeconds[index]);
     })];
 
-    // Whether a motor gets up to speed from standstill with a cold bank.
-    private static bool Turns(Mains mains, Bank bank, Unit unit, PredictionSettings settings)
+    /// <summary>Whether a motor gets up to speed from standstill with a cold bank.</summary>
+    public static bool Turns(Mains mains, Bank bank, Unit unit, double sourceOhms)
     {
-        var simulation = new CircuitSimulation(mains, bank, unit, sourceOhms: settings.SourceOhms);
+        var simulation = new CircuitSimulation(mains, bank, unit, sourceOhms: sourceOhms);
         while (simulation.Seconds < MotorStartSeconds && simulation.UnitState[2] < TurningSpeed)
         {
             simulation.Step();

@@ -86,7 +86,7 @@ internal sealed class ConstantPowerSolver(BankSolver bank, SwitchModeResponse un
     {
         var shorted = bank.Feed(volts, sourceOhms);
         var high = Math.Log(bank.BankVolts / shorted) + 1e-9;
-        var low = Math.Log(bank.Carry(1e-9) / 1e-9);
+        var low = Math.Log(bank.Carry(1e-6) / 1e-6);
         var bracket = new Bracket(low, Mismatch(low, out _, out _), high, Mismatch(high, out var watts, out point));
         for (var iteration = 0; iteration < 60 && bracket.Width > 1e-8; iteration++)
         {

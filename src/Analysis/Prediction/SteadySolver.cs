@@ -88,5 +88,5 @@ internal sealed class SteadySolver
         return Math.Log(carried) - logOhms;
     }
 
-    private double ColdOhms() => Bank.Carry(1e-9) / 1e-9;
+    private double ColdOhms() => Bank.Carry(1e-6) / 1e-6;
 }

@@ -16,9 +16,10 @@ internal struct Propagation
     private double rectangleFourth;
 
     /// <param name="nominal">The output with every input at its nominal value.</param>
-    public Propagation(double nominal)
+    /// <param name="isLinear">Never to work in logarithms: for a sum that may come near zero.</param>
+    public Propagation(double nominal, bool isLinear = false)
     {
-        isLog = nominal > 0;
+        isLog = nominal > 0 && !isLinear;
         this.nominal = isLog ? Math.Log(nominal) : nominal;
         mean = this.nominal;
     }
