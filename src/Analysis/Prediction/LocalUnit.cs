@@ -46,6 +46,10 @@ internal sealed class LocalUnit
         };
     }
 
+    /// <summary>The rating (a factor) at which the unit lets this current through.</summary>
+    public double RatingOf(double volts, double seriesOhms, double amps) => Math.Exp(
+        (Math.Log(amps / centre.Amps) - byVolts[0] * Math.Log(volts / centreVolts) - byOhms[0] * Math.Log(seriesOhms / centreOhms)) / byRating[0]);
+
     // A locked motor's neighbour is locked too.
     private static UnitResponse Like(UnitResponse original, UnitResponse next)
     {

@@ -24,13 +24,14 @@ internal sealed class SteadyEvaluator
     private readonly double plainOhms;
     private readonly double sourceOhms;
     private readonly double nominalOhms;
-    private readonly Dictionary<Filament, FilamentCurve> curves = [];
+    private readonly BankCurves curves;
 
     public SteadyEvaluator(
         Mains mains, Bank bank, Unit unit, UnitResponse response, in UnitPoint point, double bankOhms, double sourceOhms, BenchInputs inputs)
     {
         (this.bank, this.inputs, this.sourceOhms, nominalOhms, plainOhms) = (bank, inputs, sourceOhms, bankOhms, response.PlainOhms);
-        solver = new BankSolver(bank);
+        curves = new BankCurves(bank, inputs);
+        solver = curves.Prepare(inputs.Nominal);
         local = double.IsNaN(plainOhms)
             ? new LocalUnit(unit, mains, response, mains.Volts, bankOhms + sourceOhms, point, inputs.Inputs[1].Sigma > 0)
             : null;
@@ -42,20 +43,8 @@ internal sealed class SteadyEvaluator
     /// <summary>The numbers at these values of the inputs.</summary>
     public double[] At(ReadOnlySpan<double> values)
     {
+        curves.Prepare(values);
         var lamps = inputs.LampsOf(values);
-        for (var lamp = 0; lamp < lamps.Count; lamp++)
-        {
-            if (lamps[lamp].Filament is { } filament)
-            {
-                solver.SetCurve(lamp, CurveOf(lamps[lamp], bank.Lamps[lamp], filament, out var scale));
-                solver.CurrentScale[lamp] = scale;
-            }
-            else
-            {
-                solver.CurrentScale[lamp] = bank.Lamps[lamp].ResistorOhms / lamps[lamp].ResistorOhms;
-            }
-        }
-
         var volts = inputs.MainsVolts(values);
         var rating = BenchInputs.UnitFactor(values);
         var point = local is null ? Plain(volts, plainOhms / rating) : Meet(volts, rating);
@@ -98,24 +87,5 @@ internal sealed class SteadyEvaluator
             at = local!.At(volts, Math.Exp(logOhms) + sourceOhms, rating);
             return Math.Log(solver.Carry(at.Amps) / at.Amps) - logOhms;
         }
-    }
-
-    // Watts only scale the current; other changes need a curve of their own, kept for the next lamp of the kind.
-    private FilamentCurve CurveOf(Lamp moved, Lamp original, Filament filament, out double scale)
-    {
-        scale = filament.Watts / original.Filament!.Watts;
-        var likeOriginal = filament with { Watts = original.Filament.Watts, CoilFactor = original.Filament.CoilFactor };
-        if (likeOriginal == original.Filament)
-        {
-            return original.Curve;
-        }
-
-        if (!curves.TryGetValue(likeOriginal, out var curve))
-        {
-            curve = new FilamentCurve(likeOriginal);
-            curves.Add(likeOriginal, curve);
-        }
-
-        return curve;
     }
 }
