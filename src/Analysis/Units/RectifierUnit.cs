@@ -43,6 +43,10 @@ public sealed class RectifierUnit : Unit
     internal override Unit Scaled(double factor) =>
         new RectifierUnit(Text, Watts * factor, Reservoir.Farads, Reservoir.InnerOhms, Reservoir.FullWave, Nominal);
 
+    /// <summary>The same load behind a capacitor that is larger by a factor.</summary>
+    internal RectifierUnit WithCapacitance(double factor) =>
+        new(Text, Watts, Reservoir.Farads * factor, Reservoir.InnerOhms, Reservoir.FullWave, Nominal);
+
     internal override UnitDynamics NewDynamics(Mains mains) => new Dynamics(Reservoir, siemens);
 
     internal override UnitResponse NewResponse(Mains mains) => new Response(Reservoir, siemens, mains.Hertz);

@@ -51,6 +51,9 @@ public sealed class SwitchModeUnit : Unit
 
     internal override Unit Scaled(double factor) => new SwitchModeUnit(Text, Watts * factor, Reservoir.Farads, StartVolts, StopVolts, Nominal);
 
+    /// <summary>The same supply with a bulk capacitor that is larger by a factor.</summary>
+    internal SwitchModeUnit WithCapacitance(double factor) => new(Text, Watts, Reservoir.Farads * factor, StartVolts, StopVolts, Nominal);
+
     internal override UnitDynamics NewDynamics(Mains mains) => new Dynamics(this);
 
     internal override UnitResponse NewResponse(Mains mains) => new SwitchModeResponse(this, mains.Hertz);
