@@ -102,6 +102,9 @@ public sealed class SwitchOn
         return (worst, peak);
     }
 
+    /// <summary>What a meter shows, its first window beginning with the switch-on: end of each window and reading.</summary>
+    public IReadOnlyList<(double Seconds, double Amps)> Readings(PredictedMeter meter) => MeterView.Readings(amps, StepSeconds, meter);
+
     /// <summary>True RMS over a stretch, in A; NaN where it reaches beyond what was simulated.</summary>
     public double RmsAmps(double fromSeconds, double seconds)
     {

@@ -51,6 +51,7 @@ public static class CommandLine
         // One line a command, in the order a technician meets them.
         new RehearseCommand(),
         new PredictCommand(),
+        new ChooseCommand(),
         new CheckCommand(),
         new CalibrateCommand(),
         new WatchCommand(),

@@ -14,6 +14,21 @@ internal sealed class PredictCommand : CliCommand
     private readonly Option<string> _bank = new("--bank") { Description = "Bank, such as \"75 W || 25 W\"", HelpName = "B", Required = true };
     private readonly Option<string> _unit = new("--unit") { Description = "Unit, such as \"resistor 300 ohm\"", HelpName = "U", Required = true };
     private readonly Option<double> _window = new("--meter-window") { Description = "The meter's window in seconds", HelpName = "S", DefaultValueFactory = _ => 0.2 };
+    private readonly Option<string> _coupling = new("--meter-coupling")
+    {
+        Description = "Whether the meter sees direct current: ac (it does not) or ac+dc",
+        HelpName = "ac|ac+dc",
+        DefaultValueFactory = _ => "ac+dc",
+    };
+
+    private readonly Option<string> _response = new("--meter-response")
+    {
+        Description = "How the meter makes its number: true-rms or mean",
+        HelpName = "true-rms|mean",
+        DefaultValueFactory = _ => "true-rms",
+    };
+
+    private readonly Option<string?> _picture = new("--picture") { Description = "Draw one sheet for the wall into this file", HelpName = "F.svg|F.png" };
     private readonly Option<string?> _config = new("--config") { Description = "Configuration whose lamp inventory the bank may name", HelpName = "F" };
 
     public PredictCommand()
@@ -23,6 +38,9 @@ internal sealed class PredictCommand : CliCommand
         Add(_bank);
         Add(_unit);
         Add(_window);
+        Add(_coupling);
+        Add(_response);
+        Add(_picture);
         Add(_config);
     }
 
@@ -38,7 +56,17 @@ internal sealed class PredictCommand : CliCommand
         var mains = Mains.Parse(parsed.GetValue(_mains)!);
         var bank = Bank.Parse(parsed.GetValue(_bank)!, mains, inventory);
         var unit = Unit.Parse(parsed.GetValue(_unit)!, mains);
-        var prediction = Predictor.Predict(mains, bank, unit, new PredictionSettings { MeterWindowSeconds = window });
+        var settings = new PredictionSettings
+        {
+            Meter = new PredictedMeter { WindowSeconds = window, Coupling = Coupling(parsed.GetValue(_coupling)!), Response = Response(parsed.GetValue(_response)!) },
+        };
+        if (parsed.GetValue(_picture) is { } picture)
+        {
+            new Picturing.PredictionPicture(mains, bank, unit, settings).Save(picture);
+            terminal.Error.WriteLine($"Picture written to {picture}");
+        }
+
+        var prediction = Predictor.Predict(mains, bank, unit, settings);
         if (terminal.WantsJson)
         {
             terminal.WriteJson(prediction);
@@ -50,6 +78,20 @@ internal sealed class PredictCommand : CliCommand
 
         return Task.FromResult(prediction.Steady.Exists ? ExitCode.Done : ExitCode.No);
     }
+
+    private static MeterCoupling Coupling(string text) => text switch
+    {
+        "ac" => MeterCoupling.Ac,
+        "ac+dc" => MeterCoupling.AcDc,
+        _ => throw new BadInputException($"--meter-coupling is '{text}'; expected ac or ac+dc."),
+    };
+
+    private static MeterResponse Response(string text) => text switch
+    {
+        "true-rms" => MeterResponse.TrueRms,
+        "mean" => MeterResponse.MeanResponding,
+        _ => throw new BadInputException($"--meter-response is '{text}'; expected true-rms or mean."),
+    };
 
     private static void Tell(TextWriter prose, BenchPrediction it)
     {
@@ -64,11 +106,6 @@ internal sealed class PredictCommand : CliCommand
             Line("steady", string.Create(CultureInfo.InvariantCulture, $"{Narration.Amps(it.Steady.LineAmps)}; the unit gets {it.Steady.UnitVolts:0.0} V and {it.Steady.UnitWatts:0.0} W"));
             Line("meter should stay within", $"{Narration.Amps(it.Band.LowAmps)} to {Narration.Amps(it.Band.HighAmps)} ({it.Band.Coverage:P0})");
             Line("switch-on", string.Create(CultureInfo.InvariantCulture, $"peak {it.Inrush.PeakAmps:0.00} A, first reading up to {Narration.Amps(it.Inrush.FirstReadingAmps)}, within 10 % after {it.Inrush.SettleSeconds:0.00} s"));
-        }
-
-        if (it.Steady.Note is { } remark)
-        {
-            Line("note", remark);
         }
 
         Line("unit shorted", string.Create(CultureInfo.InvariantCulture, $"{Narration.Amps(it.Shorted.LineAmps)}, peak {it.Shorted.PeakAmps:0.00} A; contrast {it.Contrast:0.0}"));
