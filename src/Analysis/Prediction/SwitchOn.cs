@@ -4,7 +4,7 @@ using Lampwarden.Analysis.Units;
 
 namespace Lampwarden.Analysis.Prediction;
 
-/// <summary>A cold switch-on as simulated: the current at every step and each lamp's temperature once a quarter cycle.</summary>
+/// <summary>A cold switch-on as simulated: the current at every step and each lamp's temperature twenty times a cycle.</summary>
 public sealed class SwitchOn
 {
     private const double SettledShare = 0.10;
@@ -31,7 +31,7 @@ public sealed class SwitchOn
     /// <summary>Time between two values of <see cref="Kelvin"/>.</summary>
     public double KelvinSeconds => StepSeconds * KelvinEvery;
 
-    private int KelvinEvery => perCycle / 4;
+    private int KelvinEvery => perCycle / 20;
 
     /// <summary>Instantaneous line current, beginning with the instant of switching.</summary>
     public IReadOnlyList<double> Amps => amps;

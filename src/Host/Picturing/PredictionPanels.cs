@@ -11,7 +11,9 @@ internal sealed class PredictionPanels(
     Mains mains, Bank bank, BenchPrediction prediction, BenchCurves curves, SwitchOn healthy, SwitchOn shorted, PredictedMeter meter)
 {
     private const double FirstGlowKelvin = 798;
+    private const double LastSeconds = 5;
 
+    // Lines are told apart by colour and weight alone: Skia's SVG canvas cannot dash.
     private static readonly Color Ink = Color.FromHex("#1a1a1a");
     private static readonly Color Amber = Color.FromHex("#d97706");
     private static readonly Color Blue = Color.FromHex("#1d5fa8");
@@ -27,15 +29,15 @@ internal sealed class PredictionPanels(
         var plot = Fresh("A lamp is no resistor", "volts across it", "amperes");
         for (var lamp = 0; lamp < Math.Min(curves.Lamps.Count, LampColours.Length); lamp++)
         {
-            Line(plot, curves.Lamps[lamp].Points, LampColours[lamp], 2, LinePattern.Solid, curves.Lamps[lamp].Name);
+            Line(plot, curves.Lamps[lamp].Points, LampColours[lamp], 2, curves.Lamps[lamp].Name);
         }
 
         if (bank.Lamps.Count > 1)
         {
-            Line(plot, curves.Bank.Points, Ink, 3.5f, LinePattern.Solid, "the bank");
+            Line(plot, curves.Bank.Points, Ink, 3.5f, "the bank");
         }
 
-        Line(plot, curves.PlainResistor.Points, Grey, 1.8f, LinePattern.Dashed, "plain resistor of the bank's rating");
+        Line(plot, curves.PlainResistor.Points, Grey, 1.8f, "plain resistor of the bank's rating");
         plot.Axes.SetLimits(0, mains.Volts * 1.02, 0, curves.ShortedAmps * 1.12);
         plot.ShowLegend(bank.Lamps.Count > 1 ? Alignment.LowerRight : Alignment.UpperLeft);
         return plot;
@@ -46,15 +48,19 @@ internal sealed class PredictionPanels(
     {
         var plot = Fresh("Where bank and unit meet", "volts across the bank (the unit gets what is left)", "amperes");
         var top = curves.ShortedAmps * 1.25;
-        Line(plot, curves.Bank.Points, Ink, 3.5f, LinePattern.Solid, "the bank");
-        Line(plot, [.. curves.Unit.Points.Where(point => point.Amps < top * 1.05)], Blue, 2.5f, LinePattern.Solid, curves.Unit.Name);
-        Line(plot, [(mains.Volts, 0), (mains.Volts, top)], Red, 2, LinePattern.Dashed, "unit shorted");
+        Line(plot, curves.Bank.Points, Ink, 3.5f, "the bank");
+        Line(plot, [.. curves.Unit.Points.Where(point => point.Amps < top * 1.05)], Blue, 2.5f, curves.Unit.Name);
+        Line(plot, [(mains.Volts, 0), (mains.Volts, top)], Red, 2, "unit shorted");
         if (prediction.Steady.Exists)
         {
-            Dot(plot, prediction.Steady.BankVolts, prediction.Steady.LineAmps, Blue, $"healthy {PredictionPicture.Amps(prediction.Steady.LineAmps)}", Alignment.LowerCenter);
+            // Below the bank's curve there is room: to the right of the point, or to its left where the short is near.
+            var right = prediction.Steady.BankVolts < 0.6 * mains.Volts;
+            Dot(
+                plot, prediction.Steady.BankVolts, prediction.Steady.LineAmps, Blue, $"healthy {PredictionPicture.Amps(prediction.Steady.LineAmps)}",
+                right ? Alignment.UpperLeft : Alignment.UpperRight, right ? 14 : -12, 16);
         }
 
-        Dot(plot, mains.Volts, curves.ShortedAmps, Red, $"short {PredictionPicture.Amps(curves.ShortedAmps)}", Alignment.LowerRight);
+        Dot(plot, mains.Volts, curves.ShortedAmps, Red, $"short {PredictionPicture.Amps(curves.ShortedAmps)}", Alignment.LowerRight, -10, -9);
         plot.Axes.SetLimits(0, mains.Volts * 1.06, 0, top);
         plot.ShowLegend(Alignment.LowerCenter, Orientation.Horizontal);
         return plot;
@@ -70,7 +76,7 @@ internal sealed class PredictionPanels(
         var steps = (int)(until / healthy.StepSeconds);
         var every = Math.Max(1, steps / 4000);
         var waves = Enumerable.Range(0, steps / every + 1).Select(step => (step * every * healthy.StepSeconds, healthy.Amps[step * every])).ToArray();
-        Line(plot, waves, Amber.WithAlpha(0.75), 1, LinePattern.Solid, "current, instant by instant");
+        Line(plot, waves, Amber.WithAlpha(0.75), 1, "current, instant by instant");
         if (prediction.Steady.Exists)
         {
             var band = plot.Add.Rectangle(0, until, prediction.Band.LowAmps, prediction.Band.HighAmps);
@@ -78,7 +84,7 @@ internal sealed class PredictionPanels(
             band.LegendText = "settled meter, 95 %";
         }
 
-        Line(plot, [.. readings.Where(point => point.Seconds <= until)], Blue, 2.6f, LinePattern.Solid, string.Create(CultureInfo.InvariantCulture, $"the meter's readings ({meter.WindowSeconds:0.###} s window)"));
+        Line(plot, [.. readings.Where(point => point.Seconds <= until)], Blue, 2.6f, string.Create(CultureInfo.InvariantCulture, $"the meter's readings ({meter.WindowSeconds:0.###} s window)"));
 
         // The first half cycles would press all else flat: what rises above is written instead.
         var interesting = Math.Max(readings.Count > 0 ? readings.Max(reading => reading.Amps) : 0, prediction.Steady.Exists ? prediction.Steady.LineAmps * 1.6 : 0);
@@ -96,17 +102,17 @@ internal sealed class PredictionPanels(
     /// <summary>Filament temperatures: who lights up first.</summary>
     public Plot Lighting()
     {
-        var plot = Fresh("Lamps lighting up: healthy (solid), unit shorted (dashed)", "seconds after switching on", "kelvin");
+        var plot = Fresh("Lamps lighting up: healthy strong, unit shorted pale", "seconds after switching on", "kelvin");
         var lamps = bank.Lamps.Select((lamp, index) => (lamp, index)).Where(pair => pair.lamp.Filament is not null).Take(LampColours.Length).ToArray();
         foreach (var (lamp, index) in lamps)
         {
-            Line(plot, Temperatures(healthy, index), LampColours[index], 2.5f, LinePattern.Solid, lamp.Name);
-            Line(plot, Temperatures(shorted, index), LampColours[index], 1.6f, LinePattern.Dashed, "");
+            Line(plot, Temperatures(healthy, index, prediction.Steady.Lamps[index].FilamentKelvin), LampColours[index], 2.5f, lamp.Name);
+            Line(plot, Temperatures(shorted, index, prediction.Shorted.Lamps[index].FilamentKelvin), LampColours[index].WithAlpha(0.45), 1.8f, "");
         }
 
-        var line = plot.Add.HorizontalLine(FirstGlowKelvin, 1.4f, Red, LinePattern.Dotted);
+        var line = plot.Add.HorizontalLine(FirstGlowKelvin, 1, Red);
         line.EnableAutoscale = false;
-        plot.Axes.SetLimits(Math.Log10(0.002), Math.Log10(5), 250, 3000);
+        plot.Axes.SetLimits(Math.Log10(0.002), Math.Log10(LastSeconds), 250, 3000);
         Note(plot, Math.Log10(0.0021), FirstGlowKelvin, "first dull red", Alignment.LowerLeft, Red);
         plot.Axes.Bottom.TickGenerator = new ScottPlot.TickGenerators.NumericManual(
             [.. new[] { 0.002, 0.005, 0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5 }.Select(Math.Log10)],
@@ -128,15 +134,17 @@ internal sealed class PredictionPanels(
         return points;
     }
 
-    private static (double, double)[] Temperatures(SwitchOn run, int lamp) =>
+    // Beyond what was simulated all is settled, or nearly.
+    private static (double, double)[] Temperatures(SwitchOn run, int lamp, double settledKelvin) =>
         [.. run.Kelvin(lamp).Select((kelvin, index) => (Math.Log10(Math.Max(index * run.KelvinSeconds, 1e-4)), kelvin))
-            .Append((Math.Log10(5), run.Kelvin(lamp)[^1]))];
+            .Append((Math.Log10(LastSeconds), double.IsNaN(settledKelvin) ? run.Kelvin(lamp)[^1] : settledKelvin))];
 
     private static Plot Fresh(string title, string bottom, string left)
     {
         var plot = new Plot();
         plot.Font.Set(ReportFonts.Family);
         plot.FigureBackground.Color = Colors.White;
+        plot.RenderManager.ClearCanvasBeforeEachRender = false;
         plot.Grid.MajorLineColor = Color.FromHex("#e6e6e6");
         plot.Title(title, 19);
         plot.XLabel(bottom, 15);
@@ -152,7 +160,7 @@ internal sealed class PredictionPanels(
         return plot;
     }
 
-    private static void Line(Plot plot, IReadOnlyList<(double X, double Y)> points, Color colour, float width, LinePattern pattern, string legend)
+    private static void Line(Plot plot, IReadOnlyList<(double X, double Y)> points, Color colour, float width, string legend)
     {
         if (points.Count == 0)
         {
@@ -160,14 +168,14 @@ internal sealed class PredictionPanels(
         }
 
         var line = plot.Add.ScatterLine(points.Select(point => point.X).ToArray(), points.Select(point => point.Y).ToArray(), colour);
-        (line.LineWidth, line.LinePattern, line.LegendText) = (width, pattern, legend);
+        (line.LineWidth, line.LegendText) = (width, legend);
     }
 
-    private static void Dot(Plot plot, double x, double y, Color colour, string text, Alignment alignment)
+    private static void Dot(Plot plot, double x, double y, Color colour, string text, Alignment alignment, float right, float down)
     {
         plot.Add.Marker(x, y, MarkerShape.FilledCircle, 13, colour);
         var label = Note(plot, x, y, text, alignment, colour);
-        (label.OffsetY, label.OffsetX) = (-9, alignment == Alignment.LowerRight ? -9 : 0);
+        (label.OffsetX, label.OffsetY) = (right, down);
     }
 
     private static ScottPlot.Plottables.Text Note(Plot plot, double x, double y, string text, Alignment alignment, Color colour)
