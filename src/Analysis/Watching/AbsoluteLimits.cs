@@ -24,12 +24,19 @@ internal sealed class AbsoluteLimits(FindingBook book)
     public bool ShortedStands => book.Stands(shorted);
 
     /// <summary>Compares one reading; <paramref name="settled"/> says whether the switch-on transient is over, <paramref name="scale"/> carries the bands to the present mains.</summary>
-    public void Observe(double seconds, double amps, double scale, bool settled, Expectation expected)
+    /// <param name="seconds">Time of the reading.</param>
+    /// <param name="amps">What was shown.</param>
+    /// <param name="scale">See above.</param>
+    /// <param name="settled">See above.</param>
+    /// <param name="expected">The prediction in force.</param>
+    /// <param name="covered">Another finding already speaks of this moment: nothing is raised twice.</param>
+    /// <param name="bandCovered">Another finding already says that the level is not what it was.</param>
+    public void Observe(double seconds, double amps, double scale, bool settled, Expectation expected, bool covered, bool bandCovered)
     {
         var shortedAmps = expected.ShortedAmps * scale;
         var tellsShort = settled && expected.ShortedAmps > expected.SteadyAmps * LeastContrast;
         shortedInARow = tellsShort && amps > shortedAmps * ShortedShare ? shortedInARow + 1 : 0;
-        if (shortedInARow == ReadingsToRaise && !book.Stands(shorted))
+        if (shortedInARow >= ReadingsToRaise && !covered && !book.Stands(shorted))
         {
             shorted = book.Raise(Signature.HardShort, Severity.Critical, seconds, seconds, Advice.Shorted(amps, shortedAmps), Evidence(amps, expected, scale));
         }
@@ -39,7 +46,7 @@ internal sealed class AbsoluteLimits(FindingBook book)
         }
 
         openInARow = settled && amps < expected.SteadyAmps * scale * OpenShare ? openInARow + 1 : 0;
-        if (openInARow == ReadingsToRaise && !book.Stands(open))
+        if (openInARow >= ReadingsToRaise && !covered && !book.Stands(open))
         {
             open = book.Raise(Signature.OpenCircuit, Severity.Critical, seconds, seconds, Advice.Open(amps), Evidence(amps, expected, scale));
         }
@@ -48,10 +55,10 @@ internal sealed class AbsoluteLimits(FindingBook book)
             book.Clear(open, seconds);
         }
 
-        WatchBand(seconds, amps, scale, settled, expected);
+        WatchBand(seconds, amps, scale, settled, expected, covered || bandCovered);
     }
 
-    private void WatchBand(double seconds, double amps, double scale, bool settled, Expectation expected)
+    private void WatchBand(double seconds, double amps, double scale, bool settled, Expectation expected, bool covered)
     {
         var (low, high) = (expected.BandLowAmps * scale, expected.BandHighAmps * scale);
         var outside = settled && (amps < low || amps > high);
@@ -59,7 +66,7 @@ internal sealed class AbsoluteLimits(FindingBook book)
         {
             insideSince = double.NaN;
             outsideSince = double.IsNaN(outsideSince) ? seconds : outsideSince;
-            if (seconds - outsideSince >= OutOfBandSeconds && !book.Stands(offPrediction) && !book.Stands(shorted) && !book.Stands(open))
+            if (seconds - outsideSince >= OutOfBandSeconds && !covered && !book.Stands(offPrediction) && !book.Stands(shorted) && !book.Stands(open))
             {
                 var sentence = amps > high ? Advice.AboveBand(amps, low, high) : Advice.BelowBand(amps, low, high);
                 offPrediction = book.Raise(Signature.OffPrediction, Severity.Warning, outsideSince, seconds, sentence, Evidence(amps, expected, scale));

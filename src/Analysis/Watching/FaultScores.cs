@@ -89,11 +89,13 @@ internal sealed class FaultScores
     {
         if (count == Capacity)
         {
-            Thin(seconds, SpacingShare);
-            for (var share = SpacingShare; count == Capacity; share *= 1.3)
+            for (var share = SpacingShare; count == Capacity && share < 10; share *= 1.3)
             {
                 Thin(seconds, share);
             }
+
+            // Only a clock that stands still leaves them all so young: then the newest gives way.
+            count -= count == Capacity ? 1 : 0;
         }
 
         onset[count] = seconds;

@@ -35,8 +35,8 @@ internal sealed class SuddenChannel
     // Strays: a garbled reading comes 0.1 to 0.3 times an hour, an arc at least 0.2 times a minute. Three within some ten minutes are arcs.
     private const double StrayLeakSeconds = 400, StraysToRaise = 2.4;
 
-    private double up;
-    private double down;
+    private Cusum up;
+    private Cusum down;
     private double strays;
     private double firstUp;
     private double firstDown;
@@ -59,7 +59,7 @@ internal sealed class SuddenChannel
     public double StrayScore => strays;
 
     /// <summary>True while an excursion is being weighed: nothing may be learned from such readings.</summary>
-    public bool InDoubt => Outlier || up > 0.5 || down > 0.5;
+    public bool InDoubt => Outlier || up.Sum > 0.5 || down.Sum > 0.5;
 
     /// <param name="seconds">Time of the reading.</param>
     /// <param name="amps">What was shown.</param>
@@ -84,18 +84,18 @@ internal sealed class SuddenChannel
         (previousAmps, previousForetold, previousSeconds) = (amps, foretold, seconds);
 
         // An unlucky start must not point before the last quiet reading.
-        firstUp = up == 0 ? (fast + seconds) / 2 : firstUp;
-        firstDown = down == 0 ? (fast + seconds) / 2 : firstDown;
+        firstUp = up.Count == 0 ? (fast + seconds) / 2 : firstUp;
+        firstDown = down.Count == 0 ? (fast + seconds) / 2 : firstDown;
         var z = Math.Clamp(Jump / sd, -Clip, Clip);
         var allowance = Allowance + (extra / sd);
-        up = Math.Max(0, up + z - allowance);
-        down = Math.Max(0, down - z - allowance);
+        up.Add(z, allowance);
+        down.Add(-z, allowance);
         var size = Math.Abs(Jump) - extra;
         Outlier = size > Math.Max(OutlierShare, OutlierSds * sd);
         var cry = Outlier ? WeighOutlier(seconds, size, sd) : SuddenCry.Nothing;
         lastJump = Jump;
         previousOutlier = Outlier;
-        return cry != SuddenCry.Nothing ? cry : up > Threshold ? SuddenCry.Up : down > Threshold ? SuddenCry.Down : SuddenCry.Nothing;
+        return cry != SuddenCry.Nothing ? cry : up.Sum > Threshold ? SuddenCry.Up : down.Sum > Threshold ? SuddenCry.Down : SuddenCry.Nothing;
     }
 
     private SuddenCry WeighOutlier(double seconds, double size, double sd)
@@ -137,15 +137,16 @@ internal sealed class SuddenChannel
 
     public void Reset()
     {
-        up = down = 0;
+        up.Start(0);
+        down.Start(0);
         Outlier = previousOutlier = false;
         lastOutlierSeconds = double.NegativeInfinity;
     }
 
     public void Transfer(StateStream state)
     {
-        state.Field(ref up);
-        state.Field(ref down);
+        up.Transfer(state);
+        down.Transfer(state);
         state.Field(ref strays);
         state.Field(ref firstUp);
         state.Field(ref firstDown);

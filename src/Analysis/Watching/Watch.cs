@@ -169,7 +169,7 @@ public sealed partial class Watch
 
         if (expectation is not null)
         {
-            limits.Observe(seconds, o.LineAmps, MainsScale(o), Settled(seconds), expectation);
+            limits.Observe(seconds, o.LineAmps, MainsScale(o), Settled(seconds), expectation, Covered(o), stepFinding > 0 || book.Stands(riseFinding));
         }
 
         if (settings.MainsMeasured)
@@ -193,6 +193,11 @@ public sealed partial class Watch
         lastReadingSeconds = seconds;
         WeighReading(o);
     }
+
+    /// <summary>Whether a standing finding already says what a limit would: an excursion being followed, or a step to this very level.</summary>
+    private bool Covered(in Observation o) =>
+        (excursion.Active && excursion.Number > 0)
+        || (book.Stands(stepFinding) && Math.Abs(o.LineAmps - book[stepFinding].Evidence["lineAmps"]) < 0.1 * o.LineAmps + 0.01 * expectation!.SteadyAmps);
 
     /// <summary>A current that takes seconds where prediction says tenths: a start-up that hesitates.</summary>
     private void WatchInrush(in Observation o)

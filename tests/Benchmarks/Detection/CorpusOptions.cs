@@ -8,6 +8,9 @@ public sealed record CorpusOptions(int Corpus, bool Shifted = false, double Rate
 {
     public const double NominalVolts = 120;
 
+    /// <summary>Line current from lamps and unit instead of exponents.</summary>
+    public bool Physical { get; init; }
+
     /// <summary>Leaves sags, taps and garbled readings out: what an oracle is spared.</summary>
     public bool Clean { get; init; }
 }

@@ -11,10 +11,32 @@ public sealed class CorpusRun
     public double[] Volts { get; private set; } = [];
     public bool[] Garbled { get; private set; } = [];
     public bool[] InSag { get; private set; } = [];
-    public double HealthyAmps { get; private set; }
 
     /// <summary>What the watch is told to expect; null for corpora made from exponents.</summary>
-    public Lampwarden.Analysis.Watching.Expectation? Expectation { get; private set; }
+    public Lampwarden.Analysis.Watching.Expectation? Expectation => Bench?.Expectation;
+
+    /// <summary>Lamps and unit behind the current; null for corpora made from exponents.</summary>
+    public PhysicalBench? Bench { get; private set; }
+
+    /// <summary>The lamp a lamp fault takes away; -1 where there is none.</summary>
+    public int DarkLamp { get; private set; } = -1;
+
+    /// <summary>Excess over the healthy current u seconds after onset, relative.</summary>
+    public double Excess(double u)
+    {
+        if (Bench is null)
+        {
+            return Fault.Excess(u);
+        }
+
+        var healthy = Bench.Amps(0, 0, -1);
+        return Fault.Kind switch
+        {
+            FaultKind.Lamp => (Bench.Amps(0, 0, DarkLamp) / healthy) - 1,
+            FaultKind.Open => -1,
+            _ => (Bench.Amps(0, Math.Log(1 + Fault.Excess(u)), -1) / healthy) - 1,
+        };
+    }
 
     public double Seconds(int i) => i / Rate;
 
@@ -29,7 +51,15 @@ public sealed class CorpusRun
         Fault = fault;
         Rate = options.Rate;
         Truth = RunTruth.Draw(options, run, fault.Kind == FaultKind.None);
-        HealthyAmps = Truth.SteadyAmps;
+        Bench = options.Physical ? PhysicalBench.Of(options, run) : null;
+        if (Bench is not null)
+        {
+            // The drawn level gives way to the bench's; what was drawn relative to it goes along.
+            var steady = Bench.Amps(0, 0, -1);
+            Truth = Truth with { SteadyAmps = steady, CountAmps = Truth.CountAmps / Truth.SteadyAmps * steady, CapAmps = double.PositiveInfinity };
+            DarkLamp = fault.Kind == FaultKind.Lamp ? (int)(Xoshiro256.For(options.Corpus, run, 21).Unit() * Bench.Bank.Lamps.Count) : -1;
+        }
+
         var seconds = fault.Kind == FaultKind.None ? 24 * 3600 : Truth.OnsetSeconds + fault.HorizonSeconds + 60;
         Count = (int)(seconds * Rate);
         if (Amps.Length < Count)
@@ -125,8 +155,9 @@ public sealed class CorpusRun
             ambient = (keep * ambient) + (kick * slow.Normal());
             var log = (Truth.Gamma * Volts[i]) + Truth.WarmUp(t) + ambient + Hvac(t);
             var load = t >= Truth.LoadSeconds ? 1 + Truth.LoadShare + (Truth.RelaxShare * Math.Exp(-(t - Truth.LoadSeconds) / Truth.RelaxTau)) : 1;
-            var healthy = Truth.SteadyAmps * Math.Exp(log) * load;
-            var amps = Math.Min(Math.Max(healthy * disturb.Factor(t), 0), Truth.CapAmps);
+            var amps = Bench is null
+                ? Math.Min(Math.Max(Truth.SteadyAmps * Math.Exp(log) * load * disturb.Factor(t), 0), Truth.CapAmps)
+                : FromBench(t, Volts[i], log - (Truth.Gamma * Volts[i]) + Math.Log(load), disturb.Factor(t));
             var read = amps * (1 + (Truth.NoiseSd * (options.Shifted ? random.HeavyTailed() : random.Normal())));
             filtered = double.IsNaN(filtered) ? read : (Truth.Pole * filtered) + ((1 - Truth.Pole) * read);
             var shown = filtered;
@@ -141,6 +172,15 @@ public sealed class CorpusRun
             var volts = CorpusOptions.NominalVolts * Math.Exp(Volts[i]) * (1 + (0.0005 * meter.Normal()));
             Volts[i] = Math.Round(volts * 10) / 10;
         }
+    }
+
+    /// <summary>Contacts cut the line current itself; everything else is done to the unit's load or to a lamp.</summary>
+    private double FromBench(double t, double logVolts, double logLoad, double factor)
+    {
+        var dark = t >= Truth.OnsetSeconds ? DarkLamp : -1;
+        return Fault.Kind is FaultKind.Creep or FaultKind.Short or FaultKind.Runaway
+            ? Bench!.Amps(logVolts, logLoad + Math.Log(factor), -1)
+            : Bench!.Amps(logVolts, logLoad, dark) * (Fault.Kind == FaultKind.Lamp ? 1 : factor);
     }
 
     /// <summary>A room kept by a thermostat: exponential rise and fall, half the period each.</summary>

@@ -17,11 +17,11 @@ public static class DetectionCommand
         bool Has(string name) => arguments.Contains(name);
         var runs = (int)Number("--runs", 40);
         var request = new Request(
-            new CorpusOptions((int)Number("--corpus", 1), Has("--shifted"), Number("--rate", 2)),
+            new CorpusOptions((int)Number("--corpus", 1), Has("--shifted"), Number("--rate", 2)) { Physical = Has("--physical") },
             runs, (int)Number("--nominal", runs), !Has("--no-mains"), !Has("--no-oracles"), !Has("--no-baselines"), Value("--only"), Has("--verbose"),
             (int)Number("--threads", 1));
         var clock = Stopwatch.StartNew();
-        Console.WriteLine(Invariant($"# Corpus {request.Options.Corpus}{(request.Options.Shifted ? " shifted" : "")}, {request.Options.Rate} readings/s, mains {(request.Mains ? "measured" : "not measured")}"));
+        Console.WriteLine(Invariant($"# Corpus {request.Options.Corpus}{(request.Options.Shifted ? " shifted" : "")}{(request.Options.Physical ? " from the physical bench" : "")}, {request.Options.Rate} readings/s, mains {(request.Mains ? "measured" : "not measured")}"));
         if (request.NominalRuns > 0)
         {
             Nominal(request);
@@ -138,14 +138,14 @@ public static class DetectionCommand
         Console.WriteLine("| --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- |");
         var names = Detectors(request).Select(detector => detector.Name).ToArray();
         var (right, named) = (0, 0);
-        foreach (var fault in Fault.All.Where(fault => request.Only is null || fault.Name.Contains(request.Only, StringComparison.Ordinal)))
+        foreach (var fault in (request.Options.Physical ? Fault.Physical : Fault.All).Where(fault => request.Only is null || fault.Name.Contains(request.Only, StringComparison.Ordinal)))
         {
             var trials = names.Select(_ => new Trial[request.Runs]).ToArray();
             Each(request, request.Runs, index =>
             {
                 var run = new CorpusRun();
                 var (oracle, cautious) = (double.NaN, double.NaN);
-                if (request.Oracles)
+                if (request.Oracles && !request.Options.Physical)
                 {
                     run.Generate(request.Options with { Clean = true }, index, fault);
                     oracle = new Oracle(false, request.Mains).Delay(run);
@@ -166,7 +166,7 @@ public static class DetectionCommand
 
             if (request.Verbose)
             {
-                Console.WriteLine("    " + string.Join(", ", trials[0].GroupBy(trial => trial.Called).Select(group => Invariant($"{group.Key}: {group.Count()}"))) + ForecastText(trials[0]));
+                Console.WriteLine("    " + string.Join(", ", trials[0].GroupBy(trial => trial.Called).Select(group => Invariant($"{group.Key}: {group.Count()}"))) + ForecastText(trials[0]) + Invariant($" | cried again within 10 s: {trials[0].Sum(trial => trial.Again)}"));
             }
 
             if (fault.Kind != FaultKind.Sag)
@@ -183,13 +183,14 @@ public static class DetectionCommand
     private static Trial Try(IDetector detector, CorpusRun run, Request request)
     {
         detector.Start(run, request.Mains);
-        var (alarm, excess) = (double.NaN, 0.0);
+        var (alarm, excess, again) = (double.NaN, 0.0, 0);
         for (var i = 0; i < run.Count; i++)
         {
             var t = run.Seconds(i);
             var cry = detector.Observe(t, run.Amps[i], request.Mains ? run.Volts[i] : double.NaN);
             if (!double.IsNaN(alarm))
             {
+                again += cry is Cry.Up or Cry.Down ? 1 : 0;
                 if (t >= alarm + 10)
                 {
                     break;
@@ -215,14 +216,29 @@ public static class DetectionCommand
 
             if (!run.Garbled[i])
             {
-                (alarm, excess) = (t, run.Fault.Excess(t - run.Truth.OnsetSeconds));
+                (alarm, excess) = (t, run.Excess(t - run.Truth.OnsetSeconds));
+                (detector as WatchDetector)?.Hold();
             }
         }
 
         var delay = alarm - run.Truth.OnsetSeconds;
         return double.IsNaN(alarm) || delay > run.Fault.HorizonSeconds
             ? new Trial(double.PositiveInfinity, double.NaN, "", 0, 0)
-            : new Trial(delay, excess, detector.Called, 0, 0) { Forecast = ForecastOf(detector, run, alarm) };
+            : new Trial(delay, excess, detector.Called, 0, 0) { Again = again, LampNamed = LampNamed(detector, run), Forecast = ForecastOf(detector, run, alarm) };
+    }
+
+    private static bool? LampNamed(IDetector detector, CorpusRun run)
+    {
+        if (run.Bench is not { } bench || run.DarkLamp < 0 || detector is not WatchDetector watch)
+        {
+            return null;
+        }
+
+        // Only where the lamps differ by a fifth or more can they be told apart by current.
+        var watts = bench.Bank.Lamps[run.DarkLamp].RatedWatts;
+        var twin = bench.Bank.Lamps.Where((_, index) => index != run.DarkLamp).Any(other => Math.Abs(other.RatedWatts / watts - 1) < 0.2);
+        return twin ? null : watch.Finding.Explanation.Contains($"lamp {bench.Bank.Lamps[run.DarkLamp].Name} has gone dark", StringComparison.Ordinal)
+            && !watch.Finding.Explanation.Contains("either", StringComparison.Ordinal);
     }
 
     /// <summary>Whether the moment foretold for the warning level, as said within ten seconds of the alarm, holds the true one: -1 early, 0 inside, +1 late; null without forecast.</summary>
@@ -235,7 +251,14 @@ public static class DetectionCommand
         }
 
         var target = (evidence["warningAmps"] / evidence["healthyAmps"]) - 1;
-        var age = run.Fault.Kind == FaultKind.Creep ? target / run.Fault.Size * 3600 : run.Fault.Size * Math.Log(1 + (target / 0.003));
+        var (early, late) = (0.0, 1e6);
+        for (var i = 0; i < 60; i++)
+        {
+            var middle = (early + late) / 2;
+            (early, late) = run.Excess(middle) < target ? (middle, late) : (early, middle);
+        }
+
+        var age = late;
         var due = run.Truth.OnsetSeconds + age - alarm;
         var high = double.IsNaN(evidence["warningInHighSeconds"]) ? double.PositiveInfinity : evidence["warningInHighSeconds"];
         return due < low ? -1 : due > high ? 1 : 0;
@@ -261,6 +284,12 @@ public static class DetectionCommand
         var excess = Score.Quantile(found.Select(trial => trial.Excess), 0.5) * 100;
         var digits = median < 100 ? "0.0" : "0";
         Console.WriteLine(Invariant($"| {fault.Name} | {name} | {kept.Length} | {Score.Show(median, digits)} | {Score.Show(late, digits)} | {missed:0.#} | {trials.Length - kept.Length} | {Score.Show(excess, "0.0")} | {named:0.#} | {Score.Show(oracle, digits)} | {Score.Show(cautious, digits)} | {Score.Show(median / oracle, "0.00")} | {Score.Show(median / cautious, "0.00")} | {Score.Show(late / cautiousLate, "0.00")} |"));
+        var lamps = trials.Where(trial => trial.LampNamed is not null).ToArray();
+        if (lamps.Length > 0)
+        {
+            Console.WriteLine(Invariant($"|  | right lamp named | {lamps.Length} | {100.0 * lamps.Count(trial => trial.LampNamed == true) / lamps.Length:0.#} % |"));
+        }
+
         Console.Out.Flush();
     }
 

@@ -35,6 +35,10 @@ public sealed class WatchDetector : IDetector
 {
     private Watch watch = null!;
     private int number;
+    private bool held;
+
+    /// <summary>The last cry is the alarm to be scored; later ones do not change what it is called.</summary>
+    public void Hold() => held = true;
 
     public string Name => "watch";
 
@@ -50,7 +54,7 @@ public sealed class WatchDetector : IDetector
     public void Start(CorpusRun run, bool mainsMeasured)
     {
         ArgumentNullException.ThrowIfNull(run);
-        number = 0;
+        (number, held) = (0, false);
         watch = new Watch(new WatchSettings
         {
             ReadingsPerSecond = run.Rate,
@@ -76,7 +80,7 @@ public sealed class WatchDetector : IDetector
             }
             else if (kind == ChangeKind.Raised && IsUnitFault(finding.Signature))
             {
-                number = finding.Number;
+                number = held ? number : finding.Number;
                 cry = IsDownward(finding) ? Cry.Down : Cry.Up;
             }
         }

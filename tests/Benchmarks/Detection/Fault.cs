@@ -49,6 +49,16 @@ public sealed record Fault(FaultKind Kind, double Size, double Second, double Ho
         new(FaultKind.Sag, 0.07, 30, 900, "sag 7 % 30 s"),
     ];
 
+    /// <summary>The classes of the second corpus; sizes are of the unit's load, and a lamp fault takes one lamp away.</summary>
+    public static readonly IReadOnlyList<Fault> Physical =
+    [
+        .. All.Where(fault => fault.Kind is FaultKind.Creep or FaultKind.Runaway or FaultKind.Open or FaultKind.Arcing or FaultKind.Hiccup or FaultKind.Sag),
+        new(FaultKind.Short, 0.10, 0, 1800, "load +10 %"),
+        new(FaultKind.Short, 1.00, 0, 1800, "load +100 %"),
+        new(FaultKind.Short, 100, 0, 1800, "dead short"),
+        new(FaultKind.Lamp, 1, 0, 7200, "one lamp dark"),
+    ];
+
     /// <summary>Excess over the healthy current u seconds after onset, for the kinds that change slowly or once.</summary>
     public double Excess(double u) => u < 0 ? 0 : Kind switch
     {

@@ -8,6 +8,12 @@ public readonly record struct Trial(double DelaySeconds, double Excess, string C
 {
     /// <summary>Where the true moment of the warning level lies against the forecast: -1 before its interval, 0 inside, +1 after; null without one.</summary>
     public int? Forecast { get; init; }
+
+    /// <summary>Further findings raised within ten seconds of the alarm: an alarm should be amended, not doubled.</summary>
+    public int Again { get; init; }
+
+    /// <summary>Whether the lamp that went dark was named; null where lamps are too much alike or none went.</summary>
+    public bool? LampNamed { get; init; }
 }
 
 /// <summary>Rules and arithmetic of the score.</summary>
