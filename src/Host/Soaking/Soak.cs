@@ -329,7 +329,13 @@ public sealed class Soak
         _tell!(change);
     }
 
-    private Task FlushAsync(CancellationToken cancellation) => _recorder?.FlushAsync(cancellation) ?? Task.CompletedTask;
+    private async Task FlushAsync(CancellationToken cancellation)
+    {
+        if (_recorder is not null && !await _recorder.FlushAsync(cancellation))
+        {
+            throw new StoreException(_store.Health.Trouble ?? "The store takes nothing more.");
+        }
+    }
 
     private async Task<SoakDocument> CloseAsync(bool serviceStops)
     {

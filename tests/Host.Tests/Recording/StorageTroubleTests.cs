@@ -95,6 +95,36 @@ public sealed class StorageTroubleTests
     }
 
     [Fact]
+    public async Task Open_DamagedTable_RefusesToRecordAndStillReadsTheRuns()
+    {
+        using var folder = new TempFolder();
+        var path = Path.Combine(folder.Path, SoakStore.FileName);
+        string run;
+        using (var store = SoakStore.Open(folder.Path, TimeProvider.System))
+        {
+            run = await RecordAsync(store, 0.4);
+        }
+
+        int page;
+        using (var connection = new StoreFile(path).Connect(Microsoft.Data.Sqlite.SqliteOpenMode.ReadOnly))
+        {
+            page = (int)StoreSchema.Scalar(connection, "SELECT rootpage FROM sqlite_master WHERE name='parked_points'");
+        }
+
+        var bytes = await File.ReadAllBytesAsync(path);
+        Random.Shared.NextBytes(bytes.AsSpan((page - 1) * 4096, 4096));
+        bytes[(page - 1) * 4096] = 77; // no kind of page has this number
+        await File.WriteAllBytesAsync(path, bytes);
+
+        var refused = Assert.Throws<StoreException>(() => SoakStore.Open(folder.Path, TimeProvider.System));
+        Assert.Contains("damaged", refused.Message, StringComparison.Ordinal);
+        Assert.Contains("export", refused.Message, StringComparison.Ordinal);
+        using var review = SoakStore.Open(folder.Path, TimeProvider.System, StoreMode.Review);
+        Assert.Equal(run, Assert.Single(review.Runs()).Run);
+        Assert.Equal(10_000, review.Readings(run).Count());
+    }
+
+    [Fact]
     public void Open_FileThatIsNoDatabase_SaysWhatToDo()
     {
         using var folder = new TempFolder();
