@@ -71,7 +71,8 @@ public static partial class ReportBuilder
             Row("drift after settling", double.NaN, 1000 * figures.DriftAmpsPerHour, value => Said.Number(value, "+0.000;-0.000;0.000", "mA/h"), ""),
             Row("with the output shorted", Predicted("shorted", "lineAmps"), double.NaN, Said.Amps, "the bank fully lit: no healthy reading comes near"),
         };
-        rows.AddRange(UnitEstimates(record, figures).Select(estimate => (IReadOnlyList<string>)estimate));
+        var (estimates, note) = UnitEstimates(record, figures);
+        rows.AddRange(estimates);
         if (double.IsFinite(figures.MainsVolts))
         {
             rows.Add(Row("mains, mean", Predicted("mains", "volts"), figures.MainsVolts, Said.Volts, ""));
@@ -84,6 +85,11 @@ public static partial class ReportBuilder
         if (prediction is null)
         {
             blocks.Add(new ReportText("This run had no prediction: it was watched against its own level only.", Small: true));
+        }
+
+        if (note is not null)
+        {
+            blocks.Add(new ReportText(note, Small: true));
         }
 
         blocks.AddRange(ReferenceUnits.ReportBlocks(store, record, figures));

@@ -113,6 +113,25 @@ public sealed class ReportTests : IDisposable
     }
 
     [Fact]
+    public async Task Build_ResistorBehindALamp_SaysItsVoltsAndWattsWithIntervals()
+    {
+        // 120 V through a plain 100-ohm resistor in the lamp's place and a unit of 50 ohm: 0.8 A, 40 V and 32 W by Ohm's law.
+        using var store = SoakStore.Open(_folder.Path, TimeProvider.System);
+        var run = await store.BeginRunAsync(SoakStoreTests.Start() with { Bank = "100 ohm", Unit = "resistor 50 ohm" });
+        for (var i = 0; i < 1000; i++)
+        {
+            run.Append(new LineReading(i, 0.8, 4, 120, 1));
+        }
+
+        await run.EndAsync(new RunEnd(Verdict.Passed, []));
+        var seen = ReportBuilder.Build(store, run.Run, DateTimeOffset.UnixEpoch).Sections.Single(section => section.Heading == "Predicted and seen");
+        var rows = ((ReportTable)seen.Blocks[0]).Rows.ToDictionary(row => row[0], row => row);
+        Assert.Equal("40.0 V", rows["across the unit, settled"][2]);
+        Assert.Equal("32.0 W", rows["power of the unit, at the end"][2]);
+        Assert.Matches(@"^3\d\.\d V to 4\d\.\d V$", rows["across the unit, settled"][3]);
+    }
+
+    [Fact]
     public async Task Build_TimeThatNobodyPolled_IsNotCalledWatched()
     {
         using var store = SoakStore.Open(_folder.Path, TimeProvider.System);
