@@ -55,6 +55,13 @@ internal static class Advice
         ? "The unit drops out and starts again: either the bank is too small for it, or its protection trips; try one more lamp in parallel before suspecting the unit."
         : Invariant($"The unit drops out and starts again every {periodSeconds:0.0} s: either the bank is too small for it, or its protection trips; try one more lamp in parallel before suspecting the unit.");
 
+    public static string CyclesItself(bool healthy, double periodSeconds) => healthy
+        ? Invariant($"The unit switches by itself between two levels, every {Span(periodSeconds)} or so: taken as its own way from now on; if it has no thermostat or compressor, look why it does.")
+        : Invariant($"The unit has begun to switch by itself between two levels, every {Span(periodSeconds)} or so: if it has no thermostat or compressor its protection trips; look for heat and for a loose joint.");
+
+    public static string Overdue(bool away, double amps) => Invariant(
+        $"The unit used to switch between two levels and has now stayed on the {(away ? "second" : "first")} ({Amps(amps)}) for much longer than ever: a thermostat or a contact may hang; look whether it gets too hot.");
+
     public static string Intermittent(double amps) => Invariant(
         $"The current jumps to and fro (last {Amps(amps)}): a loose or arcing contact; switch off and look at plugs, switch, fuse holder and lamp sockets for scorching.");
 

@@ -135,6 +135,9 @@ internal sealed class SuddenChannel
     /// <summary>A gap: the next reading has no neighbour.</summary>
     public void Skip() => previousAmps = double.NaN;
 
+    /// <summary>The strays were the unit's own switching.</summary>
+    public void ForgetStrays() => strays = 0;
+
     public void Reset()
     {
         up.Start(0);

@@ -24,6 +24,7 @@ public sealed partial class Watch
     private int mainsFinding;
     private bool isReturn;
     private bool excursionJoins;
+    private int nextEdges = 4;
 
     private void WeighReading(in Observation o)
     {
@@ -35,14 +36,20 @@ public sealed partial class Watch
             return;
         }
 
+        if (FollowCycle(o, log))
+        {
+            return;
+        }
+
+        log -= cycle.Offset;
         var model = slow.Model;
         var foretold = slow.Foretell(seconds, mains.Now);
         var sd = Math.Sqrt(Math.Max(noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance);
         var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * mains.Unrest);
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);
-        WatchStuck(o, Math.Exp(foretold));
-        var cry = sudden.Observe(seconds, o.LineAmps, Math.Exp(foretold), excursion.Active ? 0 : offset, sd, extra, noise.Pole, noise.PoleDoubtful || !settings.MainsMeasured);
+        WatchStuck(o, Math.Exp(foretold + cycle.Offset));
+        var cry = sudden.Observe(seconds, o.LineAmps, Math.Exp(foretold + cycle.Offset), excursion.Active ? 0 : offset, sd, extra, noise.Pole, noise.PoleDoubtful || !settings.MainsMeasured);
         if (excursion.Active)
         {
             // Filter undone, the unit may be back while the meter's own filter still climbs: such a reading teaches nothing.
@@ -86,6 +93,7 @@ public sealed partial class Watch
 
         var onset = cry == SuddenCry.Up ? sudden.OnsetUpSeconds : cry == SuddenCry.Down ? sudden.OnsetDownSeconds : o.Seconds;
         excursionJoins = false;
+        nextEdges = 4;
         excursion.Begin(onset, o.Seconds, sudden.Jump, sd);
         isReturn = stepOffset != 0 && Math.Abs(Math.Log(Math.Max(1 + sudden.Jump, 0.01)) + stepOffset) < 0.3 * Math.Abs(stepOffset);
         var mayBeMains = !settings.MainsMeasured && Math.Abs(sudden.Jump) < DipShare;
@@ -104,6 +112,7 @@ public sealed partial class Watch
         trend.Restart();
         noise.Skip();
         slow.Restart(warmSd);
+        cycle.Restart();
     }
 
     private void RaiseExcursion(in Observation o, Signature signature)
@@ -145,8 +154,10 @@ public sealed partial class Watch
             RaiseExcursion(o, signature);
         }
 
-        if (excursion.Number > 0 && !excursionJoins && signature != book[excursion.Number].Signature)
+        if (excursion.Number > 0 && !excursionJoins && (signature != book[excursion.Number].Signature || excursion.Edges >= nextEdges))
         {
+            // The period is told anew each time twice as many goings and comings have been seen.
+            nextEdges = Math.Max(nextEdges, 2) * (excursion.Edges >= nextEdges ? 2 : 1);
             Rename(o, signature);
         }
 
@@ -193,6 +204,8 @@ public sealed partial class Watch
         var tap = !settings.MainsMeasured && Math.Abs(step) < TapShare && excursion.Number == 0;
         if (isReturn)
         {
+            RememberReturn(o);
+            (expectation, expectationBefore) = (expectationBefore ?? expectation, null);
             ClearIfStanding(ref stepFinding, o.Seconds);
             ClearIfStanding(ref riseFinding, o.Seconds);
             stepOffset = 0;
@@ -208,6 +221,7 @@ public sealed partial class Watch
             {
                 Explain(o, by);
                 stepFinding = excursion.Number;
+                RememberLeaving(excursion.OnsetSeconds, by, stepFinding);
             }
 
             stepOffset += by;
@@ -232,6 +246,7 @@ public sealed partial class Watch
         if (why.Lamp is { } lamp)
         {
             evidence["lampPredictedAmps"] = why.Cause == Cause.LampDark ? lamp.AmpsWithout : lamp.AmpsWith;
+            expectationBefore = expectation;
             expectation = expectation!.Scaled(Math.Exp(change), lamp);
         }
 
@@ -366,5 +381,6 @@ public sealed partial class Watch
         state.Field(ref mainsFinding);
         state.Field(ref isReturn);
         state.Field(ref excursionJoins);
+        state.Field(ref nextEdges);
     }
 }

@@ -6,7 +6,7 @@ namespace Lampwarden.Analysis.Watching;
 /// </summary>
 public sealed partial class Watch
 {
-    private const int StateVersion = 3;
+    private const int StateVersion = 4;
     private const double LeastSettleSeconds = 5;
     private const double SlowInrushSeconds = 4, SlowInrushTimes = 8;
 
@@ -23,6 +23,7 @@ public sealed partial class Watch
     private readonly StuckCode stuck;
     private readonly InrushView inrush = new();
     private Expectation? expectation;
+    private Expectation? expectationBefore;
     private int stuckFinding;
     private double firstSeconds = double.NaN;
     private double lastSeconds;
@@ -108,7 +109,17 @@ public sealed partial class Watch
             expectation = what.Expectation;
         }
 
+        if (what.Kind == AnnouncementKind.CyclesByItself)
+        {
+            // What has been learned stays; what was found of the cycle is forgiven.
+            cycle.Declared = true;
+            Forgive(seconds);
+            return book.Take();
+        }
+
         announcedSeconds = seconds;
+        cycle.Restart();
+        firstCycleFinding = 0;
         AssumeExponent();
         excursion.End();
         sudden.Reset();
@@ -278,7 +289,9 @@ public sealed partial class Watch
         state.Field(ref holdUntilSeconds);
         state.Field(ref readings);
         Expectation.Transfer(state, ref expectation);
+        Expectation.Transfer(state, ref expectationBefore);
         TransferSudden(state);
         TransferSlow(state);
+        TransferCycle(state);
     }
 }

@@ -104,7 +104,7 @@ public sealed class PhysicalBench
                 var found = Solve(bank, scale, dark, unit, Volts * Math.Exp(FirstVolt + (i * VoltStep)), mains);
 
                 // A constant-power unit beyond what the bank carries: it stays where it last ran.
-                grid[(i * LoadSteps) + j] = double.IsNaN(found) ? grid[(i * LoadSteps) + j - 1] : Math.Log(found);
+                grid[(i * LoadSteps) + j] = !double.IsNaN(found) ? Math.Log(found) : j > 0 ? grid[(i * LoadSteps) + j - 1] : Math.Log(0.02 * amps);
             }
         }
 

@@ -1,0 +1,162 @@
+using Lampwarden.Analysis.Watching;
+using Xunit;
+
+namespace Lampwarden.Analysis.Tests.Watching;
+
+/// <summary>What the watch makes of units and meters that behave in ways of their own.</summary>
+public sealed class WatchBehaviourTests
+{
+    private static readonly Expectation Bank = new()
+    {
+        SteadyAmps = 0.5, BandLowAmps = 0.4, BandHighAmps = 0.6, ShortedAmps = 1.2, SettleSeconds = 0.3,
+        Lamps = [new ExpectedLamp("north", 0.40), new ExpectedLamp("east", 0.45)],
+    };
+
+    private static Watch Bench(Expectation? expectation = null, bool mains = false) =>
+        new(new WatchSettings { ReadingsPerSecond = Series.Rate, Expectation = expectation, MainsMeasured = mains });
+
+    private static double Volts(double t) => 120 + (1.5 * Math.Sin(t / 500)) + (0.3 * Math.Sin(t / 7));
+
+    [Fact]
+    public void Observe_ThermostatFromTheStart_IsLearnedAndLeftInPeace()
+    {
+        // Ten minutes: six on, four off at a third of the current.
+        static double Amps(double t) => t % 600 < 360 ? 0.9 : 0.3;
+        var watch = Bench(mains: true);
+        watch.Feed(Series.Of(5 * 3600, Amps, volts: Volts));
+        Assert.All(watch.Findings, finding => Assert.Equal(Signature.Cycling, finding.Signature));
+        Assert.All(watch.Findings, finding => Assert.Equal(Severity.Notice, finding.Severity));
+        Assert.All(watch.Findings, finding => Assert.True(finding.RaisedSeconds < 1800));
+        Assert.Equal(Verdict.Passed, watch.Judge(5 * 3600).Verdict);
+    }
+
+    [Fact]
+    public void Observe_ThermostatStopsSwitching_IsNoticed()
+    {
+        static double Amps(double t) => t > 9000 || t % 600 < 360 ? 0.9 : 0.3;
+        var watch = Bench(mains: true);
+        watch.Feed(Series.Of(3 * 3600 + 1800, Amps, volts: Volts));
+        var last = watch.Findings[^1];
+        Assert.Equal(Signature.OffPrediction, last.Signature);
+        Assert.InRange(last.RaisedSeconds, 9000 + 1000, 9000 + 2400);
+    }
+
+    [Fact]
+    public void Observe_CreepBehindAThermostat_IsFound()
+    {
+        static double Amps(double t) => (t % 600 < 360 ? 0.9 : 0.3) * (1 + (Math.Max(0, t - 9000) / 3600 * 0.05));
+        var watch = Bench(mains: true);
+        watch.Feed(Series.Of(4 * 3600, Amps, volts: Volts));
+        Assert.Contains(watch.Findings, finding => finding.Signature is Signature.DevelopingShort or Signature.Runaway && finding.RaisedSeconds > 9000);
+    }
+
+    [Fact]
+    public void Observe_LampGoesDark_IsNamedByItsEffect()
+    {
+        static double Amps(double t) => t < 5000 ? 0.5 : 0.5 * 0.806;
+        var watch = Bench(Bank, mains: true);
+        watch.Feed(Series.Of(5100, Amps, volts: Volts));
+        var finding = Assert.Single(watch.Findings);
+        Assert.Equal(Signature.LampOut, finding.Signature);
+        Assert.Contains("lamp north has gone dark", finding.Explanation, StringComparison.Ordinal);
+        Assert.True(finding.Evidence["likelierTimes"] > 3);
+    }
+
+    [Fact]
+    public void Observe_FallThatNoLampExplains_IsNotBlamedOnALamp()
+    {
+        static double Amps(double t) => t < 5000 ? 0.5 : 0.5 * 0.6;
+        var watch = Bench(Bank, mains: true);
+        watch.Feed(Series.Of(5100, Amps, volts: Volts));
+        Assert.Equal(Signature.OffPrediction, watch.Findings[0].Signature);
+        Assert.Contains("a part of the unit has dropped out", watch.Findings[0].Explanation, StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public void Observe_LampComesBack_ClearsItsFinding()
+    {
+        static double Amps(double t) => t is > 5000 and < 6000 ? 0.5 * 0.8 : 0.5;
+        var watch = Bench(Bank, mains: true);
+        watch.Feed(Series.Of(6100, Amps, volts: Volts));
+        Assert.NotNull(Assert.Single(watch.Findings).ClearedSeconds);
+    }
+
+    [Fact]
+    public void Observe_MainsDipMeasured_IsAMainsEventOnly()
+    {
+        static double Dip(double t) => t is > 5000 and < 5020 ? 110 : Volts(t);
+        var watch = Bench(mains: true);
+        watch.Feed(Series.Of(6000, t => 0.5 * Math.Pow(Dip(t) / 120, 0.7), volts: Dip));
+        var finding = Assert.Single(watch.Findings);
+        Assert.Equal(Signature.MainsShift, finding.Signature);
+        Assert.InRange(finding.RaisedSeconds, 5000, 5002);
+        Assert.NotNull(finding.ClearedSeconds);
+    }
+
+    [Fact]
+    public void Observe_MeterHangs_IsNamedStuck()
+    {
+        var watch = Bench(mains: true);
+        var held = 0.5;
+        var series = Series.Of(5000, _ => 0.5, volts: Volts).Select(o => o with { LineAmps = Math.Round(o.LineAmps, 3) })
+            .Select(o => o.Seconds < 4000 ? o with { LineAmps = held = o.LineAmps } : o with { LineAmps = held });
+        watch.Feed(series);
+        var finding = Assert.Single(watch.Findings);
+        Assert.Equal(Signature.MeterStuck, finding.Signature);
+        Assert.InRange(finding.RaisedSeconds, 4005, 4300);
+    }
+
+    [Fact]
+    public void Observe_StartUpThatHesitates_IsSlowInrush()
+    {
+        static double Amps(double t) => 0.5 + (0.4 * Math.Exp(-t / 8));
+        var watch = Bench(Bank with { ShortedAmps = 3, BandHighAmps = 2 });
+        watch.Feed(Series.Of(120, Amps));
+        Assert.Contains(watch.Findings, finding => finding.Signature == Signature.SlowInrush && finding.Evidence["settledSeconds"] is > 10 and < 25);
+    }
+
+    [Fact]
+    public void Observe_HiccupOfSixSeconds_GivesPeriodAndDuty()
+    {
+        static double Amps(double t) => t < 4000 || t % 6 < 2 ? 0.5 : 0.01;
+        var watch = Bench(mains: true);
+        watch.Feed(Series.Of(4100, Amps, volts: Volts));
+        var finding = Assert.Single(watch.Findings);
+        Assert.Equal(Signature.Cycling, finding.Signature);
+        Assert.Equal(6, finding.Evidence["periodSeconds"], 0.12);
+        Assert.Equal(1.0 / 3, finding.Evidence["dutyShare"], 0.05);
+    }
+
+    [Fact]
+    public void Observe_ScaledReadings_GiveTheSameFindings()
+    {
+        static double Amps(double t) => t < 12000 ? 0.5 : 0.5 * (1 + ((t - 12000) / 3600 * 0.1));
+        var one = Bench(mains: true);
+        var ten = Bench(mains: true);
+        one.Feed(Series.Of(14000, Amps, volts: Volts));
+        ten.Feed(Series.Of(14000, t => Amps(t) * 8, volts: Volts)); // a power of two: not one bit of the logarithm's increments may matter
+        Assert.Equal(one.Findings.Select(finding => (finding.Signature, finding.RaisedSeconds)), ten.Findings.Select(finding => (finding.Signature, finding.RaisedSeconds)));
+        Assert.NotEmpty(one.Findings);
+    }
+
+    [Fact]
+    public void Observe_RisingCurrent_ForetellsTheWarningLevel()
+    {
+        // 10 %/h from 12000 s: the band's upper end, 20 % above, is reached two hours after the onset.
+        static double Amps(double t) => t < 12000 ? 0.5 : 0.5 * (1 + ((t - 12000) / 3600 * 0.1));
+        var watch = Bench(Bank, mains: true);
+        watch.Feed(Series.Of(13000, Amps, volts: Volts));
+        var finding = watch.Findings.First(finding => finding.Signature == Signature.DevelopingShort);
+        var due = 12000 + 7200 - 13000;
+        Assert.InRange(due, finding.Evidence["warningInLowSeconds"] * 0.8, finding.Evidence["warningInHighSeconds"] * 1.2);
+    }
+
+    [Fact]
+    public void Observe_ClockStepsBack_IsSurvived()
+    {
+        var watch = Bench(mains: true);
+        watch.Feed(Series.Of(4000, _ => 0.5, volts: Volts));
+        watch.Feed(Series.Of(1000, _ => 0.5, volts: Volts).Select(o => o with { Seconds = o.Seconds + 3900 }));
+        Assert.Empty(watch.Findings);
+    }
+}
