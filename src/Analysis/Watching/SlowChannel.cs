@@ -7,7 +7,7 @@ internal sealed class SlowChannel
 {
     public const double BlockSeconds = 10;
     private const double ArmSeconds = 2400;
-    private const double YoungSeconds = 6300;
+    private const double YoungSeconds = 9000;
     private const double LearningExtra = 8;
     private const double YoungExtra = 4;
     private const double LearningExcess = 0.03;

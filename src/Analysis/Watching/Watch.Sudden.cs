@@ -3,6 +3,9 @@ namespace Lampwarden.Analysis.Watching;
 public sealed partial class Watch
 {
     private const double LeastSd = 0.003;
+
+    // Real meters scatter with heavier tails than a normal: the sd is taken 15 % larger.
+    private const double HeavyTails = 1.32;
     private const double TrendIgnored = 0.008;
     private const double LoadWarmUpSd = 0.05;
     private const double SwitchWarmUpSd = 0.02;
@@ -44,7 +47,7 @@ public sealed partial class Watch
         log -= cycle.Offset;
         var model = slow.Model;
         var foretold = slow.Foretell(seconds, mains.Now);
-        var sd = Math.Sqrt(Math.Max(noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance);
+        var sd = Math.Sqrt(Math.Max(HeavyTails * noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance);
         var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * mains.Unrest);
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);

@@ -176,7 +176,7 @@ public sealed class PublishedChartTests
                 up.Add(z, 0.5);
                 sum += z - 0.5;
                 least = Math.Min(least, sum);
-                Assert.Equal(sum - least, up.Sum, 6);
+                Assert.Equal(sum - least, up.Sum, 1e-9);
             }
         },
         iter: 200);
