@@ -143,6 +143,10 @@ public sealed partial class SoakStore
         {
             throw StoreException.From(trouble, "Reading", FilePath);
         }
+        catch (InvalidDataException damage)
+        {
+            throw new StoreException($"{FilePath} is damaged: {damage.Message}. The readings themselves may be whole: try 'lampwarden export'.", damage);
+        }
     }
 
     private static RunInfo ReadInfo(SqliteDataReader row) => ReadInfo(row, 0);

@@ -53,9 +53,17 @@ public sealed partial class SoakStore
         var run = new ActiveRun { Key = KeyOf(id), Id = id };
         using var reader = new StoreReader(_file);
         run.Entries = reader.Count(run.Key, "SELECT coalesce(sum(count),0) FROM chunks WHERE run=$run");
-        foreach (var chunk in reader.ShortChunks(run.Key))
+        try
         {
-            run.Tail.AddRange(ReadingChunk.Unpack(chunk.Data));
+            foreach (var chunk in reader.ShortChunks(run.Key))
+            {
+                run.Tail.AddRange(ReadingChunk.Unpack(chunk.Data));
+            }
+        }
+        catch (InvalidDataException)
+        {
+            // Left as they are: what is whole among them is still read one by one, and the damaged one says so.
+            run.Tail.Clear();
         }
 
         return run;

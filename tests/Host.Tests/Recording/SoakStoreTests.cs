@@ -145,5 +145,19 @@ public sealed class SoakStoreTests : IDisposable
         Assert.Equal((0, 0, null), (health.Waiting, health.Refused, health.Trouble));
     }
 
+    [Fact]
+    public async Task AddNote_ThatBreaksARule_IsRefusedAloneAndHoldsUpNothing()
+    {
+        using var store = Open();
+        var run = await store.BeginRunAsync(Start());
+        run.Append(new LineReading(1, 0.4, 1));
+        await Assert.ThrowsAsync<StoreException>(() => store.AddNoteAsync(run.Run, null!));
+        Assert.True(await run.FlushAsync());
+        Assert.Single(store.Readings(run.Run));
+        var health = store.Health;
+        Assert.Equal((1, null), (health.Refused, health.Trouble));
+        Assert.Equal(health.Accepted, health.Stored + health.Waiting);
+    }
+
     private SoakStore Open() => SoakStore.Open(_folder.Path, _time, StoreMode.Recording, SmallChunks);
 }

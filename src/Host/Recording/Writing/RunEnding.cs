@@ -35,13 +35,23 @@ internal static class RunEnding
             return;
         }
 
+        byte[][] gathered;
+        try
+        {
+            gathered = [.. rows.Chunk(ChunksTogether).Select(some => SlotChunk.Pack([.. some.SelectMany(row => SlotChunk.Unpack(row.Slots))]))];
+        }
+        catch (InvalidDataException)
+        {
+            // A damaged one stays where it is and says so when it is asked for; the run is closed all the same.
+            return;
+        }
+
         batch.Run("DELETE FROM rollups WHERE run=?", run);
-        foreach (var some in rows.Chunk(ChunksTogether))
+        foreach (var (some, slots) in rows.Chunk(ChunksTogether).Zip(gathered))
         {
             batch.Run(
                 "INSERT INTO rollups (run, first, count, from_ms, to_ms, slots) VALUES (?,?,?,?,?,?)",
-                run, some[0].First, some.Sum(row => row.Count), some.Min(row => row.From), some.Max(row => row.To),
-                SlotChunk.Pack([.. some.SelectMany(row => SlotChunk.Unpack(row.Slots))]));
+                run, some[0].First, some.Sum(row => row.Count), some.Min(row => row.From), some.Max(row => row.To), slots);
         }
     }
 }

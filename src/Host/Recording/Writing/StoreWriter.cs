@@ -63,9 +63,10 @@ internal sealed class StoreWriter : IDisposable
             {
                 GiveWay(StoreException.From(trouble, "Writing into", _path));
             }
-            catch (InvalidOperationException trouble)
+            catch (Exception trouble) when (trouble is not OutOfMemoryException)
             {
-                // What the driver throws when a failed statement has already ended the transaction.
+                // The driver's InvalidOperationException when a failed statement has already ended the transaction, or a slip of
+                // ours. A dead writer would take the watch down with it; a trouble that is told raises an alert and keeps it alive.
                 GiveWay(new StoreException($"Writing into {_path} failed: {trouble.Message}", trouble));
             }
         }
@@ -137,10 +138,10 @@ internal sealed class StoreWriter : IDisposable
             {
                 item.Action.Apply?.Invoke(_batch);
             }
-            catch (SqliteException trouble) when (!StoreException.IsOfTheMedium(trouble))
+            catch (Exception trouble) when (trouble is not OutOfMemoryException && !(trouble is SqliteException medium && StoreException.IsOfTheMedium(medium)))
             {
-                // The statement alone has failed (a broken rule, a thing too big): it would fail for ever and hold up the rest.
-                item.Action.Finish(StoreException.From(trouble, "Writing into", _path));
+                // The entry alone has failed (a broken rule, a thing too big): it would fail for ever and hold up the rest.
+                item.Action.Finish(new StoreException($"Writing into {_path} failed: {trouble.Message}", trouble));
                 lost++;
             }
         }
