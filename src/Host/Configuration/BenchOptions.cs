@@ -43,6 +43,7 @@ public sealed class BenchOptions
         Bank = bank,
         Unit = unit ?? Unit,
         UnitLabel = unitLabel,
+        UnitModel = (unit ?? Unit) == Unit ? UnitModel : null,
         Meters = Meters,
         Soak = new SoakOptions
         {

@@ -1,6 +1,10 @@
+using Lampwarden.Acquisition;
+using Lampwarden.Analysis.Lamps;
 using Lampwarden.Analysis.Watching;
+using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Recording;
 using Lampwarden.Host.Reporting;
+using Lampwarden.Host.Soaking;
 using Lampwarden.Host.Tests.Recording;
 
 namespace Lampwarden.Host.Tests.Reporting;
@@ -39,6 +43,20 @@ public sealed class ReferenceUnitsTests : IDisposable
         var other = ReferenceUnits.BandFor(store, Model, "150 W", Mains, 0.82)!;
         Assert.Equal(2 * SettledAmps, other.SteadyAmps, 2e-5);
         Assert.True((other.HighAmps - other.LowAmps) / other.SteadyAmps > (same.HighAmps - same.LowAmps) / same.SteadyAmps);
+    }
+
+    [Fact]
+    public void HeldTo_Reference_IsWhatTheWatchExpects()
+    {
+        var options = new BenchOptions
+        {
+            Name = "left", Mains = Mains, Bank = "75 W || 25 W", Unit = "resistor 200 ohm", UnitModel = Model, Meters = [new MeterOptions()],
+        };
+        var plan = BenchPlan.From(options, LampInventory.Empty);
+        var held = plan.HeldTo(new ReferenceBand(Model, "20260402-001", 0.42, 0.40, 0.44, "")).WatchSettings.Expectation!;
+        Assert.Equal((0.42, 0.40, 0.44), (held.SteadyAmps, held.BandLowAmps, held.BandHighAmps));
+        Assert.Equal(plan.WatchSettings.Expectation!.ShortedAmps, held.ShortedAmps);
+        Assert.Same(plan, plan.HeldTo(null));
     }
 
     [Fact]
