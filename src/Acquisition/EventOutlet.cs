@@ -5,15 +5,15 @@ namespace Lampwarden.Acquisition;
 
 /// <summary>
 /// The one place where events are numbered, stamped, counted and handed on. Thread-safe.
-/// What the channel cannot take at once waits here, at most one read's worth of lines, until <see cref="FlushAsync"/>;
-/// nothing is dropped.
+/// Events wait here, at most one read's worth of lines, until <see cref="FlushAsync"/> hands them on together: in a flood the consumer
+/// is then woken once for a read and not once for a line. Nothing is dropped.
 /// </summary>
 internal sealed class EventOutlet
 {
     private readonly Lock _gate = new();
-    private readonly Queue<MeterEvent> _waiting = new();
-    private readonly Channel<MeterEvent> _channel = Channel.CreateBounded<MeterEvent>(
-        new BoundedChannelOptions(1024) { SingleReader = true, FullMode = BoundedChannelFullMode.Wait });
+    private readonly List<MeterEvent> _waiting = [];
+    private readonly Channel<MeterEvent[]> _channel = Channel.CreateBounded<MeterEvent[]>(
+        new BoundedChannelOptions(256) { SingleReader = true, FullMode = BoundedChannelFullMode.Wait });
 
     private readonly double _windowSeconds;
     private long _sequence;
@@ -30,7 +30,8 @@ internal sealed class EventOutlet
 
     public HealthBook Health { get; }
 
-    public ChannelReader<MeterEvent> Reader => _channel.Reader;
+    /// <summary>What was handed on, in order; never an empty one.</summary>
+    public ChannelReader<MeterEvent[]> Reader => _channel.Reader;
 
     /// <summary>A reading or an overload out of a line that arrived.</summary>
     /// <param name="value">What it said.</param>
@@ -58,18 +59,13 @@ internal sealed class EventOutlet
         }
     }
 
-    /// <summary>Waits until everything given so far lies in the channel.</summary>
+    /// <summary>Hands on what was given so far; waits while the consumer is behind.</summary>
     public ValueTask FlushAsync(CancellationToken cancellationToken)
     {
         lock (_gate)
         {
-            if (_waiting.Count == 0)
-            {
-                return ValueTask.CompletedTask;
-            }
+            return HandOn() ? ValueTask.CompletedTask : FlushWaitingAsync(cancellationToken);
         }
-
-        return FlushWaitingAsync(cancellationToken);
     }
 
     private async ValueTask FlushWaitingAsync(CancellationToken cancellationToken)
@@ -78,17 +74,22 @@ internal sealed class EventOutlet
         {
             lock (_gate)
             {
-                while (_waiting.TryPeek(out var one) && _channel.Writer.TryWrite(one))
-                {
-                    _waiting.Dequeue();
-                }
-
-                if (_waiting.Count == 0)
+                if (HandOn())
                 {
                     return;
                 }
             }
         }
+    }
+
+    private bool HandOn()
+    {
+        if (_waiting.Count > 0 && _channel.Writer.TryWrite([.. _waiting]))
+        {
+            _waiting.Clear();
+        }
+
+        return _waiting.Count == 0;
     }
 
     /// <summary>Nothing more will come: because of a fault of ours, or null at a normal end.</summary>
@@ -109,9 +110,6 @@ internal sealed class EventOutlet
         }
 
         Health.Event(one, countLine);
-        if (_waiting.Count > 0 || !_channel.Writer.TryWrite(one))
-        {
-            _waiting.Enqueue(one);
-        }
+        _waiting.Add(one);
     }
 }

@@ -72,9 +72,12 @@ public sealed class MeterSession : IAsyncDisposable
         {
             while (await _station.Outlet.Reader.WaitToReadAsync(CancellationToken.None))
             {
-                while (_station.Outlet.Reader.TryRead(out var one))
+                while (_station.Outlet.Reader.TryRead(out var several))
                 {
-                    yield return one;
+                    foreach (var one in several)
+                    {
+                        yield return one;
+                    }
                 }
             }
 

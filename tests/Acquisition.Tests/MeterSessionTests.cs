@@ -1,5 +1,7 @@
 using Lampwarden.Acquisition.Tests.Support;
+using Lampwarden.Acquisition.Transport;
 using Lampwarden.Simulator.Instruments;
+using NSubstitute;
 
 namespace Lampwarden.Acquisition.Tests;
 
@@ -60,6 +62,55 @@ public sealed class MeterSessionTests
         Assert.Equal(Enumerable.Range(1, gaps.Count).Select(n => (long)n), gaps.Select(one => one.Sequence));
         Assert.Equal(2, bench.Session.Health.Openings);
         Assert.True(back.ElapsedSeconds > gaps[0].ElapsedSeconds);
+    }
+
+    [Fact]
+    public async Task ReadAsync_BackUnderAnotherName_IsFoundByTheNameThatStays()
+    {
+        var port = TestBench.NewTerminal();
+        await using var bench = new TestBench(port);
+        await bench.NextAsync();
+        var before = port.SlavePath;
+
+        port.PlugInElsewhere();
+        bench.World.Amps = 0.5;
+
+        await bench.UntilAsync(one => one.Value == 0.5);
+        Assert.NotEqual(before, port.SlavePath);
+    }
+
+    [Fact]
+    public async Task ReadAsync_WallClockSetInMidRun_GoesOnWithoutAGapAndTellsIt()
+    {
+        var time = new SetClock();
+        await using var bench = new TestBench(TestBench.NewTerminal(), time: time);
+        var before = await bench.NextAsync();
+
+        time.Step = TimeSpan.FromHours(-2);
+        var after = await bench.UntilAsync(one => one.Utc < before.Utc);
+
+        Assert.Equal(MeterEventKind.Reading, after.Kind);
+        Assert.Equal(-7200 + (after.ElapsedSeconds - before.ElapsedSeconds), (after.Utc - before.Utc).TotalSeconds, 0.05);
+        Assert.Equal(1, bench.Session.Health.ClockSteps);
+        Assert.Empty(bench.Session.Health.Gaps);
+    }
+
+    [Fact]
+    public async Task ReadAsync_WireThatTakesNothing_GivesGapsAndNotAHang()
+    {
+        var transport = Substitute.For<IMeterTransport>();
+        transport.OpenAsync(default).ReturnsForAnyArgs(_ => Task.FromResult(new MeterConnection(new DeafStream(), () => { })));
+        var options = new MeterOptions { Name = "line", ReplyTimeoutSeconds = 0.05 };
+        await using var session = new MeterSession(options, TimeProvider.System, transport);
+
+        await foreach (var one in session.ReadAsync(TestContext.Current.CancellationToken))
+        {
+            Assert.Equal(GapReason.NoAnswer, one.Reason);
+            if (one.Sequence == 2)
+            {
+                break;
+            }
+        }
     }
 
     [Fact]
@@ -165,5 +216,26 @@ public sealed class MeterSessionTests
             {
             }
         });
+    }
+
+    /// <summary>The system's clock, whose wall time somebody sets.</summary>
+    private sealed class SetClock : TimeProvider
+    {
+        public TimeSpan Step { get; set; }
+
+        public override DateTimeOffset GetUtcNow() => base.GetUtcNow() + Step;
+    }
+
+    /// <summary>Takes nothing and says nothing until it is told to stop.</summary>
+    private sealed class DeafStream : MemoryStream
+    {
+        public override async ValueTask<int> ReadAsync(Memory<byte> buffer, CancellationToken cancellationToken = default)
+        {
+            await Task.Delay(Timeout.Infinite, cancellationToken);
+            return 0;
+        }
+
+        public override ValueTask WriteAsync(ReadOnlyMemory<byte> buffer, CancellationToken cancellationToken = default) =>
+            new(Task.Delay(Timeout.Infinite, cancellationToken));
     }
 }

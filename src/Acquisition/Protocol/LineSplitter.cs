@@ -9,7 +9,8 @@ namespace Lampwarden.Acquisition.Protocol;
 /// </summary>
 internal sealed class LineSplitter
 {
-    private const int Room = 8192;
+    private const int MostAtOnce = 8192;
+    private const int Room = 4 * MostAtOnce; // an unfinished line, a read's worth not yet cut into lines, and one being read
     private readonly byte[] _buffer = new byte[Room];
     private readonly int _longest;
     private readonly SearchValues<byte> _ends;
@@ -25,7 +26,7 @@ internal sealed class LineSplitter
     /// <param name="lineEnd">Characters each of which ends a line; empty for LF and CR.</param>
     public LineSplitter(int longest = 4096, string lineEnd = "")
     {
-        ArgumentOutOfRangeException.ThrowIfGreaterThan(longest, Room / 2);
+        ArgumentOutOfRangeException.ThrowIfGreaterThan(longest, MostAtOnce);
         _longest = longest;
         _ends = SearchValues.Create(lineEnd.Length == 0 ? "\n\r"u8 : Encoding.Latin1.GetBytes(lineEnd));
     }
@@ -40,10 +41,13 @@ internal sealed class LineSplitter
     public bool HoldsLine => _buffer.AsSpan(_start, _end - _start).IndexOfAnyExcept(_ends) is >= 0 and var text
         && _buffer.AsSpan(_start + text, _end - _start - text).ContainsAny(_ends);
 
-    /// <summary>Where to read the next bytes to; never empty as long as <see cref="TryRead"/> is called until it says no.</summary>
+    /// <summary>
+    /// Where to read the next bytes to. The lines received before may be taken afterwards, while the bytes come in; once they are
+    /// (until <see cref="TryRead"/> says no) there is always room.
+    /// </summary>
     public Memory<byte> Free()
     {
-        if (_start > 0 && (_start == _end || _buffer.Length - _end < _longest))
+        if (_start > 0 && (_start == _end || _buffer.Length - _end < MostAtOnce))
         {
             _buffer.AsSpan(_start, _end - _start).CopyTo(_buffer);
             _searched -= _start;
@@ -52,7 +56,7 @@ internal sealed class LineSplitter
             _start = 0;
         }
 
-        return _buffer.AsMemory(_end);
+        return _buffer.AsMemory(_end, Math.Min(MostAtOnce, _buffer.Length - _end));
     }
 
     /// <summary>Takes note of bytes read into <see cref="Free"/>.</summary>

@@ -47,16 +47,41 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
     /// <summary>For whom the next questions are asked: its patience counts, and its book.</summary>
     public void AskFor(Station station) => _asking = station;
 
-    /// <summary>Sends a command; answers, if it has any, are fetched by <see cref="NextAsync"/>.</summary>
-    public ValueTask SendAsync(string command, CancellationToken cancellationToken)
+    /// <summary>Sends a command that has no answer.</summary>
+    /// <exception cref="TransportException">The wire is gone, or takes nothing.</exception>
+    public async ValueTask SendAsync(string command, CancellationToken cancellationToken)
     {
-        if (!_commands.TryGetValue(command, out var bytes))
+        var timer = StartTimer();
+        await using var stop = cancellationToken.UnsafeRegister(static source => ((CancellationTokenSource)source!).Cancel(), timer);
+        await SentAsync(BeginSend(command, timer.Token), cancellationToken);
+    }
+
+    /// <summary>
+    /// Asks a question: the next line that is no echo, or null after the patience is over; in real time, whatever clock the polls follow.
+    /// </summary>
+    /// <exception cref="TransportException">The wire is gone, or takes nothing.</exception>
+    public async ValueTask<Answer?> AskAsync(string command, CancellationToken cancellationToken)
+    {
+        var timer = StartTimer();
+        await using var stop = cancellationToken.UnsafeRegister(static source => ((CancellationTokenSource)source!).Cancel(), timer);
+        // The answer is waited for while the question is still going out: one wake-up less, and it cannot come before.
+        var sending = BeginSend(command, timer.Token);
+        var answer = await NextAsync(timer, cancellationToken);
+        if (answer is null || sending.IsFaulted)
         {
-            bytes = _commands[command] = Encoding.Latin1.GetBytes(command + _asking.Options.Protocol.CommandEndText);
+            await SentAsync(sending, cancellationToken);
         }
 
-        _sawLineTooLong = false;
-        return _wire.SendAsync(bytes, cancellationToken);
+        return answer;
+    }
+
+    /// <summary>One more line, as with <see cref="AskAsync"/>, without a question.</summary>
+    /// <exception cref="TransportException">The wire is gone.</exception>
+    public async ValueTask<Answer?> NextAsync(CancellationToken cancellationToken)
+    {
+        var timer = StartTimer();
+        await using var stop = cancellationToken.UnsafeRegister(static source => ((CancellationTokenSource)source!).Cancel(), timer);
+        return await NextAsync(timer, cancellationToken);
     }
 
     /// <summary>Refuses what came unasked; returns how many lines that were.</summary>
@@ -83,35 +108,6 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
     /// The same line twice is a stutter, and refused with the next question.
     /// </summary>
     public bool IsContradicted(Answer answer) => _answers.Reader.TryPeek(out var other) && !IsEcho(other.Text) && !other.Text.SequenceEqual(answer.Text);
-
-    /// <summary>The next line that is no echo of the command, or null after the patience is over; in real time, whatever clock the polls follow.</summary>
-    /// <exception cref="TransportException">The wire is gone.</exception>
-    public async ValueTask<Answer?> NextAsync(CancellationToken cancellationToken)
-    {
-        var timer = StartTimer();
-        await using var stop = cancellationToken.UnsafeRegister(static source => ((CancellationTokenSource)source!).Cancel(), timer);
-        try
-        {
-            while (true)
-            {
-                var answer = await _answers.Reader.ReadAsync(timer.Token);
-                if (!IsEcho(answer.Text))
-                {
-                    return answer;
-                }
-
-                answer.PassOver();
-            }
-        }
-        catch (OperationCanceledException) when (!cancellationToken.IsCancellationRequested)
-        {
-            return null;
-        }
-        catch (ChannelClosedException closed) when (closed.InnerException is TransportException gone)
-        {
-            throw new TransportException(gone.Reason, gone.Message, gone);
-        }
-    }
 
     /// <summary>Forgets a line that began and never ended, so that the next answer is not glued to it.</summary>
     public void DropUnfinished() => _wire.DropUnfinished = true;
@@ -155,6 +151,54 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
         }
 
         return false;
+    }
+
+    private Task BeginSend(string command, CancellationToken cancellationToken)
+    {
+        if (!_commands.TryGetValue(command, out var bytes))
+        {
+            bytes = _commands[command] = Encoding.Latin1.GetBytes(command + _asking.Options.Protocol.CommandEndText);
+        }
+
+        _sawLineTooLong = false;
+        return _wire.SendAsync(bytes, cancellationToken).AsTask();
+    }
+
+    private static async Task SentAsync(Task sending, CancellationToken cancellationToken)
+    {
+        try
+        {
+            await sending;
+        }
+        catch (OperationCanceledException) when (!cancellationToken.IsCancellationRequested)
+        {
+            throw new TransportException(GapReason.NoAnswer, "the other side does not even take our questions; flow control, or not a meter? The connection is being opened anew.");
+        }
+    }
+
+    private async ValueTask<Answer?> NextAsync(CancellationTokenSource timer, CancellationToken cancellationToken)
+    {
+        try
+        {
+            while (true)
+            {
+                var answer = await _answers.Reader.ReadAsync(timer.Token);
+                if (!IsEcho(answer.Text))
+                {
+                    return answer;
+                }
+
+                answer.PassOver();
+            }
+        }
+        catch (OperationCanceledException) when (!cancellationToken.IsCancellationRequested)
+        {
+            return null;
+        }
+        catch (ChannelClosedException closed) when (closed.InnerException is TransportException gone)
+        {
+            throw new TransportException(gone.Reason, gone.Message, gone);
+        }
     }
 
     private CancellationTokenSource StartTimer()

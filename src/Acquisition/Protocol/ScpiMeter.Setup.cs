@@ -61,12 +61,8 @@ internal sealed partial class ScpiMeter
     {
         var identify = station.Options.Protocol.Identify;
         dialogue.RefuseUnasked();
-        if (identify)
-        {
-            await dialogue.SendAsync(AskIdentity, cancellationToken);
-        }
-
-        for (var lines = 0; lines < MostErrors && await dialogue.NextAsync(cancellationToken) is { } answer; lines++)
+        var next = identify ? await dialogue.AskAsync(AskIdentity, cancellationToken) : await dialogue.NextAsync(cancellationToken);
+        for (var lines = 0; lines < MostErrors && next is { } answer; lines++, next = await dialogue.NextAsync(cancellationToken))
         {
             if (identify && IsIdentity(answer))
             {
@@ -147,8 +143,7 @@ internal sealed partial class ScpiMeter
 
         _lastCheck = _time.GetTimestamp();
         dialogue.RefuseUnasked();
-        await dialogue.SendAsync(AskStatus, cancellationToken);
-        var reply = await dialogue.NextAsync(cancellationToken);
+        var reply = await dialogue.AskAsync(AskStatus, cancellationToken);
         if (reply is not { } answer
             || !int.TryParse(answer.ToString(), NumberStyles.AllowLeadingSign, CultureInfo.InvariantCulture, out var status))
         {
@@ -179,8 +174,7 @@ internal sealed partial class ScpiMeter
     {
         for (var count = 0; count < MostErrors; count++)
         {
-            await dialogue.SendAsync(AskError, cancellationToken);
-            if (await dialogue.NextAsync(cancellationToken) is not { } answer)
+            if (await dialogue.AskAsync(AskError, cancellationToken) is not { } answer)
             {
                 _hasErrorQueue = false;
                 _outOfStep = true;

@@ -110,8 +110,7 @@ internal sealed partial class ScpiMeter : IMeterProtocol
         var query = station.Options.Protocol.Query;
         dialogue.RefuseUnasked();
         var asked = station.Outlet.Clock.Now;
-        await dialogue.SendAsync(query, cancellationToken);
-        if (await dialogue.NextAsync(cancellationToken) is not { } answer)
+        if (await dialogue.AskAsync(query, cancellationToken) is not { } answer)
         {
             NoAnswer(dialogue, station, query);
             return;

@@ -37,24 +37,11 @@ internal sealed class Wire
     {
         var lastRead = _time.GetTimestamp();
         var catchingUp = false;
+        var room = _lines.Free();
+        var reading = ReadSomeAsync(room, cancellationToken);
         while (true)
         {
-            int count;
-            var room = _lines.Free();
-            try
-            {
-                count = await _stream.ReadAsync(room, cancellationToken);
-            }
-            catch (Exception error) when (error is IOException or ObjectDisposedException or InvalidOperationException or UnauthorizedAccessException)
-            {
-                throw Gone(error);
-            }
-
-            if (count == 0)
-            {
-                throw Gone(null);
-            }
-
+            var count = await reading;
             if (DropUnfinished)
             {
                 // The bytes just read sit behind the unfinished ones: forget those first.
@@ -67,6 +54,10 @@ internal sealed class Wire
             catchingUp = _time.GetElapsedTime(lastRead, now).TotalSeconds > HeldUpSeconds || (catchingUp && count == room.Length);
             lastRead = now;
             _lines.Received(count, now);
+
+            // The next read goes on while these lines are looked at: the system's buffer holds 4 kB, and a flood would wait for us.
+            room = _lines.Free();
+            reading = ReadSomeAsync(room, cancellationToken);
             while (_lines.TryRead(out var line, out var first, out var last, out var tooLong))
             {
                 if (tooLong)
@@ -92,6 +83,19 @@ internal sealed class Wire
             await _stream.WriteAsync(command, cancellationToken);
         }
         catch (Exception error) when (error is IOException or ObjectDisposedException or InvalidOperationException or UnauthorizedAccessException)
+        {
+            throw Gone(error);
+        }
+    }
+
+    private async ValueTask<int> ReadSomeAsync(Memory<byte> room, CancellationToken cancellationToken)
+    {
+        try
+        {
+            return await _stream.ReadAsync(room, cancellationToken) is > 0 and var count ? count : throw Gone(null);
+        }
+        catch (Exception error) when (error is ObjectDisposedException or InvalidOperationException or UnauthorizedAccessException
+            or (IOException and not TransportException))
         {
             throw Gone(error);
         }

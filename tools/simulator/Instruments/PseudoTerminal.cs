@@ -50,10 +50,19 @@ public sealed class PseudoTerminal : IInstrumentPort
             }
 
             _line = new Line(_received.Writer);
-            var fresh = Place + ".new";
-            File.Delete(fresh);
-            File.CreateSymbolicLink(fresh, _line.SlavePath);
-            File.Move(fresh, Place, overwrite: true);
+            Link(_line);
+        }
+    }
+
+    /// <summary>Pulls the cable and puts it into another socket at once: the terminal gets another name, the link stays.</summary>
+    public void PlugInElsewhere()
+    {
+        lock (_gate)
+        {
+            var fresh = new Line(_received.Writer); // made while the old one is there, so that the system cannot give the old name again
+            _line?.Dispose();
+            _line = fresh;
+            Link(fresh);
         }
     }
 
@@ -114,6 +123,15 @@ public sealed class PseudoTerminal : IInstrumentPort
         }
 
         return ValueTask.CompletedTask;
+    }
+
+    // Exchanged in one step: a client never finds the link missing while a terminal is there.
+    private void Link(Line line)
+    {
+        var fresh = Place + ".new";
+        File.Delete(fresh);
+        File.CreateSymbolicLink(fresh, line.SlavePath);
+        File.Move(fresh, Place, overwrite: true);
     }
 
     /// <summary>One terminal from plugging in to pulling out, with a thread that waits for the client's bytes.</summary>

@@ -14,7 +14,8 @@ internal sealed class SessionFuzz
     private readonly IInstrumentPort _port;
     private readonly bool _scpi;
     private readonly string _dialect;
-    private readonly HashSet<double> _sent = [];
+    private HashSet<double> _sent = [];
+    private HashSet<double> _sentBefore = []; // what was sent just before may still be on its way
     private readonly List<byte> _line = [];
     private readonly Lock _gate = new();
     private byte[] _late = [];
@@ -102,7 +103,7 @@ internal sealed class SessionFuzz
     {
         lock (_gate)
         {
-            return _sent.Contains(value) || _sent.Any(one => SecondOpinion.Agree(one, value));
+            return _sent.Contains(value) || _sentBefore.Contains(value) || _sent.Concat(_sentBefore).Any(one => SecondOpinion.Agree(one, value));
         }
     }
 
@@ -208,7 +209,7 @@ internal sealed class SessionFuzz
         {
             if (_sent.Count > 20_000)
             {
-                _sent.Clear();
+                (_sent, _sentBefore) = ([], _sent);
             }
 
             BytesSent += bytes.Length;
