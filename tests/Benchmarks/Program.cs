@@ -1,5 +1,6 @@
 using Lampwarden.Benchmarks.Detection;
 using Lampwarden.Benchmarks.Meters;
+using Lampwarden.Benchmarks.Physics;
 using Lampwarden.Benchmarks.Recording;
 
 // Each subject is one word: dotnet run -c Release --project tests/Benchmarks -- SUBJECT [options]
@@ -23,9 +24,14 @@ switch (args.FirstOrDefault())
         return await FuzzCommands.SessionAsync(args[1..]);
     case "meters-peer":
         return await Peer.RunAsync(args[1..]);
+    case "physics":
+        return PhysicsCommand.Run();
+    case "physics-checks":
+        return PhysicsChecksCommand.Run();
     default:
         Console.Error.WriteLine("Name a subject: detection [--corpus ID] [--runs N] [--nominal N] [--shifted] [--rate R] [--no-mains] [--no-oracles] [--no-baselines] [--only TEXT] [--threads N] [--verbose]");
         Console.Error.WriteLine("  or: store; kill-store [--times 200]; forward --url URL [--api v1|v2] [--bucket NAME] [--hours H] [--rate R]");
         Console.Error.WriteLine("  or: meters [flood|idle|crowd]; fuzz-meters [--lines N] [--seed S]; fuzz-session [--minutes M] [--seed S]");
+        Console.Error.WriteLine("  or: physics; physics-checks");
         return 2;
 }

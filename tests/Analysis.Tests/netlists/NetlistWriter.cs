@@ -14,7 +14,7 @@ internal sealed class NetlistWriter(Mains mains, double phaseDegrees)
     private readonly StringBuilder text = new();
     private int next;
 
-    public string Write(Bank bank, Unit unit, double seconds, double stepSeconds = 5e-5)
+    public string Write(Bank bank, Unit unit, double seconds, double stepSeconds = 2.5e-5)
     {
         Line($"* {bank.Text} feeding {unit.Text}");
         Line($"Vs s 0 SIN(0 {Math.Sqrt(2) * mains.Volts:R} {mains.Hertz:R} 0 0 {phaseDegrees:R})");
