@@ -36,7 +36,9 @@ public sealed class MeterTroubleTests
         await bench.UntilAsync(one => one.Kind == MeterEventKind.Reading, seen);
 
         Assert.All(seen.Where(one => one.Kind == MeterEventKind.Reading), one => Assert.Equal(Truth, one.Value));
-        Assert.All(seen.Where(one => one.Kind == MeterEventKind.Gap), one => Assert.Contains(one.Reason, reasons));
+        // The patience is short here, so a busy machine may add a gap of its own.
+        Assert.All(seen.Where(one => one.Kind == MeterEventKind.Gap), one => Assert.Contains(one.Reason, reasons.Append(GapReason.NoAnswer)));
+        Assert.Contains(seen, one => reasons.Contains(one.Reason));
         Assert.DoesNotContain(seen, one => one.Kind == MeterEventKind.Overload);
         AssertBalanced(bench.Session.Health, seen.Count + 1);
     }
