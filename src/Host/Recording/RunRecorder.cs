@@ -49,14 +49,6 @@ public sealed class RunRecorder
     /// <summary>Appends a step in the life of an alert. Await <see cref="FlushAsync"/> before anybody is told of it.</summary>
     public bool AppendAlert(StoredAlertChange change) => Add(change.Seconds, batch => RunRows.Write(batch, _run.Key, change));
 
-    /// <summary>Keeps the watch's state, in place of the one before, so that an interrupted run can be taken up again.</summary>
-    public bool KeepWatchState(double seconds, ReadOnlyMemory<byte> state)
-    {
-        var bytes = state.ToArray();
-        return Add(seconds, batch => batch.Run(
-            "INSERT OR REPLACE INTO watch_states (run, at_ms, data) VALUES (?,?,?)", _run.Key, StoreBatch.Milliseconds(seconds), bytes));
-    }
-
     /// <summary>Has everything appended so far put on disk, at once.</summary>
     /// <returns>True: it is on disk. False: it is not, and <see cref="StoreHealth.Trouble"/> says why; it stays queued and is tried again.</returns>
     public async Task<bool> FlushAsync(CancellationToken cancellationToken = default)

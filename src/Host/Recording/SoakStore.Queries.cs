@@ -94,12 +94,6 @@ public sealed partial class SoakStore
     /// <summary>Whether the run has mains readings.</summary>
     public bool HasVolts(string run) => Readings(run).Any(reading => !double.IsNaN(reading.MainsVolts));
 
-    /// <summary>The watch's last kept state of an interrupted run; null where there is none.</summary>
-    public (double Seconds, byte[] State)? WatchState(string run) => Read(reader => reader.List<(double, byte[])?>(
-        "SELECT at_ms, data FROM watch_states WHERE run=$run",
-        row => (row.GetInt64(0) / 1000.0, row.GetFieldValue<byte[]>(1)),
-        ("$run", KeyOf(run))).FirstOrDefault());
-
     /// <summary>The bytes of an attachment.</summary>
     /// <exception cref="StoreException">There is no such run or attachment.</exception>
     public byte[] Attachment(string run, string name) => Read(reader => reader.List(

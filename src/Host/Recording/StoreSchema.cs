@@ -66,6 +66,10 @@ internal static class StoreSchema
         """
         CREATE INDEX chunks_in_time ON chunks (run, first, count, from_ms, to_ms);
         """,
+        // A soak that is carried on weighs its stored readings again, which needs no state of the watch's kept.
+        """
+        DROP TABLE watch_states;
+        """,
     ];
 
     /// <summary>For a file that cannot be written, and so not be brought to this version.</summary>

@@ -9,7 +9,7 @@ namespace Lampwarden.Host.Reporting;
 /// <summary>A report as one HTML file that fetches nothing. The page's shape stands in Html/report.liquid; all text is encoded.</summary>
 public static class HtmlReport
 {
-    private const float PictureWidth = 720;
+    private const float PictureWidth = 560;
 
     private static readonly Lazy<IFluidTemplate> Template = new(Parse);
 

@@ -25,7 +25,7 @@ public static partial class ReportBuilder
         facts.Add(("Recorded by", info.Software.Length > 0 ? info.Software : Said.Unknown));
         if (info.ResumedFrom is { } earlier)
         {
-            facts.Add(("Carries on", $"run {earlier}"));
+            facts.Add(("Carries on", $"run {earlier}, whose record holds what came before"));
         }
 
         facts.AddRange(Meters(record.ConfigurationJson));

@@ -20,12 +20,16 @@ public static partial class ReportBuilder
         var figures = RunFigures.Of(store, run);
         var sections = new List<ReportSection>
         {
-            new("The whole soak", [Trace(store, record, 0, double.PositiveInfinity, 0.42, TraceCaption(record))]),
+            new("The whole soak", [Trace(store, record, figures.HasSwitchOn ? 0 : figures.StartSeconds, double.PositiveInfinity, 0.42, TraceCaption(record))]),
             Circumstances(record),
             PredictedAndSeen(store, record, figures),
-            new("Switch-on", [Trace(store, record, 0, Math.Min(StartSeconds, Math.Max(1, figures.LengthSeconds)), 0.3, "The first minute, every reading: the inrush through cold filaments and its fall.")]),
-            Findings(record),
         };
+        if (figures.HasSwitchOn)
+        {
+            sections.Add(new("Switch-on", [Trace(store, record, 0, Math.Min(StartSeconds, Math.Max(1, figures.LengthSeconds)), 0.3, "The first minute, every reading: the inrush through cold filaments and its fall.")]));
+        }
+
+        sections.Add(Findings(record));
         if (record.AlertChanges.Count > 0)
         {
             sections.Add(Alerts(record));

@@ -6,7 +6,8 @@ namespace Lampwarden.Host.Reporting;
 /// What a run looked like in a few numbers, from its readings alone. Currents in A, times in s; NaN where the run is too
 /// short or too empty to say. Used by the report, by comparisons and by reference units.
 /// </summary>
-/// <param name="FirstAmps">The first reading.</param>
+/// <param name="StartSeconds">The first entry: 0 or nearly, but for a run that carries on another, whose clock it keeps.</param>
+/// <param name="FirstAmps">The first reading after switch-on; NaN where the run does not reach back to it.</param>
 /// <param name="PeakAmps">Largest reading of the first minute; positive infinity where the meter was overloaded then.</param>
 /// <param name="SteadyAmps">Median of the run's bucket means: the level it spent most of its time at.</param>
 /// <param name="SettleSeconds">From when on readings stay within 10 % of <paramref name="SteadyAmps"/> for at least 5 s.</param>
@@ -16,6 +17,7 @@ namespace Lampwarden.Host.Reporting;
 /// <param name="NoiseAmps">Standard deviation of a reading about its neighbours (from successive differences).</param>
 /// <param name="MainsVolts">Mean of measured mains; NaN without it.</param>
 public sealed record RunFigures(
+    double StartSeconds,
     double FirstAmps,
     double PeakAmps,
     double SteadyAmps,
@@ -31,6 +33,9 @@ public sealed record RunFigures(
     double LengthSeconds,
     long Readings)
 {
+    /// <summary>Whether the run reaches back to the switch-on.</summary>
+    public bool HasSwitchOn => StartSeconds < PeakWithinSeconds;
+
     private const double PeakWithinSeconds = 60;
     private const double SettledWithin = 0.10;
     private const double SettledForSeconds = 5;
@@ -43,7 +48,7 @@ public sealed record RunFigures(
         var filled = window.Buckets.Where(bucket => bucket.Count > 0).ToList();
         if (filled.Count == 0)
         {
-            return new RunFigures(double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, 0, 0);
+            return new RunFigures(0, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, double.NaN, 0, 0);
         }
 
         var steady = Median(filled.Select(bucket => bucket.MeanAmps));
@@ -54,10 +59,10 @@ public sealed record RunFigures(
         }
 
         var length = start.LastSeconds;
-        var part = Math.Min(600, length / 10);
+        var part = Math.Min(600, (length - start.StartSeconds) / 10);
         var settledFrom = double.IsNaN(start.SettleSeconds) ? double.PositiveInfinity : start.SettleSeconds;
         return new RunFigures(
-            start.FirstAmps, start.PeakAmps, steady, start.SettleSeconds,
+            start.StartSeconds, start.FirstAmps, start.PeakAmps, steady, start.StartSeconds < PeakWithinSeconds ? start.SettleSeconds : double.NaN,
             Mean(store, run, settledFrom, settledFrom + part).Amps, Mean(store, run, length - part, length).Amps,
             filled.Min(bucket => bucket.MinAmps), filled.Max(bucket => bucket.MaxAmps),
             Slope([.. filled.Where(bucket => bucket.FromSeconds >= settledFrom)]), start.NoiseAmps,
@@ -119,6 +124,8 @@ public sealed record RunFigures(
         private double _squares;
         private long _differences;
 
+        public double StartSeconds { get; private set; } = double.NaN;
+
         public double FirstAmps { get; private set; } = double.NaN;
 
         public double PeakAmps { get; private set; } = double.NaN;
@@ -132,13 +139,14 @@ public sealed record RunFigures(
         public void Add(in LineReading reading)
         {
             LastSeconds = reading.Seconds;
+            StartSeconds = double.IsNaN(StartSeconds) ? reading.Seconds : StartSeconds;
             if (reading.IsMissing)
             {
                 _last = double.NaN;
                 return;
             }
 
-            FirstAmps = double.IsNaN(FirstAmps) ? reading.Amps : FirstAmps;
+            FirstAmps = double.IsNaN(FirstAmps) && reading.Seconds <= PeakWithinSeconds ? reading.Amps : FirstAmps;
             if (reading.Seconds <= PeakWithinSeconds && !(reading.Amps <= PeakAmps))
             {
                 PeakAmps = reading.Amps;

@@ -17,6 +17,7 @@ internal static class Silences
     /// <summary>A run's stored gaps and its silences together, in order of time.</summary>
     public static IReadOnlyList<StoredGap> AllGaps(SoakStore store, RunRecord record)
     {
+        record = record with { Gaps = [.. record.Gaps.Select(gap => SinceEarlierRun(store, record, gap))] };
         var silences = new List<StoredGap>();
         var last = double.NaN;
         var longest = LongestStep(store, record.Info.Run);
@@ -31,6 +32,17 @@ internal static class Silences
         }
 
         return [.. record.Gaps.Concat(silences).OrderBy(gap => gap.FromSeconds)];
+    }
+
+    // A run that carries on another keeps its clock: what came before it is that one's, and only the time between is a gap.
+    private static StoredGap SinceEarlierRun(SoakStore store, RunRecord record, StoredGap gap)
+    {
+        if (gap.FromSeconds > 0 || record.Info.ResumedFrom is not { } id || store.Runs().FirstOrDefault(run => run.Run == id) is not { } earlier)
+        {
+            return gap;
+        }
+
+        return earlier.StartedUtc == record.Info.StartedUtc ? gap with { FromSeconds = Math.Min(earlier.LengthSeconds, gap.ToSeconds) } : gap;
     }
 
     private static double LongestStep(SoakStore store, string run)

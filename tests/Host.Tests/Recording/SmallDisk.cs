@@ -18,7 +18,8 @@ internal sealed class SmallDisk : IDisposable
             disk._folder.Dispose();
         }
 
-        Outside.Need(mounted, "a small file system in memory cannot be mounted here (Linux and root are needed)");
+        // Not a program that could be installed: in a container even root may not mount, so this skips wherever it must.
+        Assert.SkipUnless(mounted, "a small file system in memory cannot be mounted here (Linux and the right to mount are needed)");
         return disk;
     }
 

@@ -86,7 +86,6 @@ public sealed class SoakStoreTests : IDisposable
             var run = await store.BeginRunAsync(Start());
             id = run.Run;
             Enumerable.Range(0, 100).ToList().ForEach(i => run.Append(new LineReading(i, 0.4, 1)));
-            run.KeepWatchState(99, new byte[] { 9 });
         }
 
         using var again = Open();

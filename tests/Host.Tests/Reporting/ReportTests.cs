@@ -147,6 +147,29 @@ public sealed class ReportTests : IDisposable
         Assert.Equal(["0:00:49", "0:01:20", "30.5 s", "not-polled"], row.Take(4));
     }
 
+    [Fact]
+    public async Task Build_RunThatCarriesOnAnother_SpeaksOfItsOwnTimeOnly()
+    {
+        using var store = SoakStore.Open(_folder.Path, TimeProvider.System);
+        var earlier = await RecordAsync(store, verdict: Verdict.Incomplete);
+        var start = SoakStoreTests.Start() with { PredictionJson = Prediction, StartedUtc = store.Run(earlier).Info.StartedUtc, ResumedFrom = earlier };
+        var run = await store.BeginRunAsync(start);
+        run.AppendMissed(4099, "service-down");
+        for (var i = 4100; i < 6000; i++)
+        {
+            run.Append(new LineReading(i, 0.42, 4));
+        }
+
+        await run.EndAsync(new RunEnd(Verdict.Passed, []));
+        var content = ReportBuilder.Build(store, run.Run, DateTimeOffset.UnixEpoch);
+        Assert.DoesNotContain(content.Sections, section => section.Heading == "Switch-on");
+        var seen = ((ReportTable)content.Sections.Single(section => section.Heading == "Predicted and seen").Blocks[0]).Rows;
+        Assert.Equal(Said.Unknown, seen[0][2]);
+        Assert.Equal("0.4200 A", seen[1][2]);
+        var gap = Assert.Single(content.Sections.Single(section => section.Heading == "Time without readings").Blocks.OfType<ReportTable>().Single().Rows);
+        Assert.Equal(["1:06:41", "1:08:20", "1 min 39 s", "service-down"], gap.Take(4));
+    }
+
     [Theory]
     [InlineData("ReturnedUnacknowledged", "returned unacknowledged")]
     [InlineData("returned-unacknowledged", "returned unacknowledged")]

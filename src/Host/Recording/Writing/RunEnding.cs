@@ -19,7 +19,6 @@ internal static class RunEnding
                 readings=(SELECT coalesce(sum(readings),0) FROM chunks WHERE chunks.run=runs.run) WHERE run=?
             """,
             end.Verdict.Text(), JsonSerializer.Serialize(end.Reasons), end.SummaryJson, length, length, run);
-        batch.Run("DELETE FROM watch_states WHERE run=?", run);
         GatherSlots(batch, run);
     }
 

@@ -9,7 +9,7 @@ namespace Lampwarden.Host.Reporting.Pictures;
 public static class PngDrawing
 {
     // Enough for 270 dots an inch on paper.
-    private const float PixelsPerPoint = 2.5f;
+    private const float PixelsPerPoint = 3.2f;
 
     /// <summary>Draws a picture of the given size in points.</summary>
     /// <returns>A data address that an image element can show.</returns>
