@@ -45,14 +45,19 @@ public sealed partial class Watch
 
     private void RaiseFall(in SlowCry cry, in Observation o)
     {
-        var lamp = cry.Shape == FaultShape.Step;
-        fallFinding = book.Raise(
-            lamp ? Signature.LampOut : Signature.OffPrediction,
-            lamp ? Severity.Warning : Severity.Notice,
-            cry.OnsetSeconds,
-            o.Seconds,
-            lamp ? Advice.StepDown(-cry.Excess * 100, o.LineAmps) : Advice.FallingSlowly(-cry.Excess * 100, o.LineAmps),
-            new() { ["lineAmps"] = o.LineAmps, ["excessPercent"] = cry.Excess * 100, ["logLikelihoodRatio"] = cry.Ratio });
+        Dictionary<string, double> evidence = new() { ["lineAmps"] = o.LineAmps, ["excessPercent"] = cry.Excess * 100, ["logLikelihoodRatio"] = cry.Ratio };
+        if (cry.Shape != FaultShape.Step)
+        {
+            var sentence = Advice.FallingSlowly(-cry.Excess * 100, o.LineAmps);
+            fallFinding = book.Raise(Signature.OffPrediction, Severity.Notice, cry.OnsetSeconds, o.Seconds, sentence, evidence);
+            return;
+        }
+
+        // A step too small for the sudden channel: the same causes compete for it.
+        var why = Hypotheses.Weigh(cry.Size, cry.SizeSd, expectation, settings.MainsMeasured);
+        evidence["likelierTimes"] = why.Times;
+        var explanation = Advice.Step(cry.Size, o.LineAmps, Hypotheses.Sentence(why), Advice.LookFirst(why.Cause));
+        fallFinding = book.Raise(SignatureOf(why, cry.Size), Severity.Warning, cry.OnsetSeconds, o.Seconds, explanation, evidence);
     }
 
     private void MaintainRise(in Observation o)
@@ -112,8 +117,8 @@ public sealed partial class Watch
         var healthy = o.LineAmps / (1 + Math.Max(cry.Excess, 0));
         var warning = Target(expectation?.BandHighAmps, healthy, WarningExcess);
         var stop = Math.Max(Target(expectation?.ShortedAmps * 0.9, healthy, StopExcess), warning * 1.2);
-        var toWarning = slow.ForetellExcess(o.Seconds, warning);
-        var toStop = slow.ForetellExcess(o.Seconds, stop);
+        var toWarning = slow.ForetellExcess(o.Seconds, Unbent(healthy, warning));
+        var toStop = slow.ForetellExcess(o.Seconds, Unbent(healthy, stop));
         var perHour = cry.Shape == FaultShape.Ramp ? cry.Size
             : cry.Shape == FaultShape.Step ? double.NaN
             : (FaultScores.Unit(cry.Shape, o.Seconds + 360 - cry.OnsetSeconds) - FaultScores.Unit(cry.Shape, o.Seconds - cry.OnsetSeconds)) * cry.Size * 10;
@@ -136,6 +141,25 @@ public sealed partial class Watch
             ["stopInLowSeconds"] = Finite(toStop.LowSeconds),
             ["stopInHighSeconds"] = Finite(toStop.HighSeconds),
         });
+    }
+
+    /// <summary>
+    /// The bank bends the way up: the nearer the line is to the bank's shorted current, the more the unit's load must grow for the same rise.
+    /// With x the line over the shorted current the unit takes x / (1 - x^b) of load, b the inverse of the bank's exponent. Gives the excess
+    /// that would be reached by the time of <paramref name="excess"/> if the beginning of the rise went on straight.
+    /// </summary>
+    private double Unbent(double healthyAmps, double excess)
+    {
+        if (expectation is not { ShortedAmps: > 0 } expected || !(healthyAmps < 0.9 * expected.ShortedAmps))
+        {
+            return excess;
+        }
+
+        var (b, x0) = (1 / expected.BankExponent, healthyAmps / expected.ShortedAmps);
+        var x = Math.Min(x0 * (1 + excess), 0.97);
+        var bank0 = Math.Pow(x0, b);
+        var grown = x / (1 - Math.Pow(x, b)) / (x0 / (1 - bank0)) - 1;
+        return grown / (1 + (b * bank0 / (1 - bank0)));
     }
 
     private static double Target(double? amps, double healthy, double otherwise) =>
