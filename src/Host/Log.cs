@@ -32,6 +32,9 @@ internal static partial class Log
     [LoggerMessage(EventId = 202, EventName = "MeterRecovered", Level = LogLevel.Information, Message = "{Bench}: meter {Meter} reads again after {Seconds:F1} s")]
     public static partial void MeterRecovered(ILogger logger, string bench, string meter, double seconds);
 
+    [LoggerMessage(EventId = 203, EventName = "MeterWarning", Level = LogLevel.Warning, Message = "{Bench}: meter {Meter}: {Text}")]
+    public static partial void MeterWarning(ILogger logger, string bench, string meter, string text);
+
     [LoggerMessage(EventId = 300, EventName = "AlertTold", Message = "{Bench}: alert {What}: {Cause} ({Severity}): {Text}")]
     public static partial void AlertTold(ILogger logger, LogLevel level, string bench, string what, string cause, string severity, string text);
 

@@ -31,6 +31,7 @@ internal sealed class MeterRoll(BenchPlan plan, SoakSurroundings around)
 
     private readonly Dictionary<string, double> _goneSinceSeconds = [];
     private readonly HashSet<string> _found = [];
+    private readonly HashSet<(string Meter, string Problem)> _warned = [];
     private readonly System.Collections.Concurrent.ConcurrentDictionary<string, MeterSession> _sessions = new();
     private double _mainsVolts = double.NaN;
     private double _mainsAtSeconds = double.NegativeInfinity;
@@ -134,7 +135,13 @@ internal sealed class MeterRoll(BenchPlan plan, SoakSurroundings around)
 
         if (_found.Add(meter.Name))
         {
-            var identity = _sessions[meter.Name].Health.Identity;
+            var health = _sessions[meter.Name].Health;
+            var identity = health.Identity;
+            foreach (var problem in health.Problems.Where(problem => _warned.Add((meter.Name, problem))))
+            {
+                Log.MeterWarning(around.Logger, plan.Name, meter.Name, problem);
+            }
+
             if (identity is not null)
             {
                 Log.MeterIdentified(around.Logger, plan.Name, meter.Name, identity);
