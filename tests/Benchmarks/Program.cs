@@ -1,5 +1,6 @@
 using Lampwarden.Benchmarks.Detection;
 using Lampwarden.Benchmarks.Meters;
+using Lampwarden.Benchmarks.Page;
 using Lampwarden.Benchmarks.Physics;
 using Lampwarden.Benchmarks.Recording;
 
@@ -28,10 +29,13 @@ switch (args.FirstOrDefault())
         return PhysicsCommand.Run();
     case "physics-checks":
         return PhysicsChecksCommand.Run();
+    case "page":
+        return await PageCommand.RunAsync(args[1..]);
     default:
         Console.Error.WriteLine("Name a subject: detection [--corpus ID] [--runs N] [--nominal N] [--shifted] [--rate R] [--no-mains] [--no-oracles] [--no-baselines] [--only TEXT] [--threads N] [--verbose]");
         Console.Error.WriteLine("  or: store; kill-store [--times 200]; forward --url URL [--api v1|v2] [--bucket NAME] [--hours H] [--rate R]");
         Console.Error.WriteLine("  or: meters [flood|idle|crowd]; fuzz-meters [--lines N] [--seed S]; fuzz-session [--minutes M] [--seed S]");
         Console.Error.WriteLine("  or: physics; physics-checks");
+        Console.Error.WriteLine("  or: page [look-back|memory|forty] (needs Chromium)");
         return 2;
 }
