@@ -43,7 +43,7 @@ public sealed class PageTests(BrowserFixture browser)
     public async Task DevelopingShort_IsSeenFromThreeMetres_BeforeItIsCritical(string screen)
     {
         await using var page = await QuietPage.OpenAsync();
-        Soak(page, page.Plans[0], 0.24);
+        Soak(page, page.Plans[0], 0.306);
         await using var sight = await browser.LookAsync(page.Url, Screen.Of(screen));
         await sight.Expect(".hero-word").ToHaveTextAsync("Holding");
         await sight.PictureAsync("holding");
@@ -62,7 +62,7 @@ public sealed class PageTests(BrowserFixture browser)
     public async Task Shelved_AnAlert_LeavesTheStripAndComesBackInTheList()
     {
         await using var page = await QuietPage.OpenAsync();
-        Soak(page, page.Plans[0], 0.24);
+        Soak(page, page.Plans[0], 0.306);
         Raise(page, "attic", Signature.MainsShift, Severity.Warning, AlertState.Shelved);
         await using var sight = await browser.LookAsync(page.Url, Screen.Laptop);
 
@@ -74,7 +74,7 @@ public sealed class PageTests(BrowserFixture browser)
     public async Task HostGone_ThePageSaysThatItIsOld()
     {
         await using var page = await QuietPage.OpenAsync();
-        Soak(page, page.Plans[0], 0.24);
+        Soak(page, page.Plans[0], 0.306);
         await using var sight = await browser.LookAsync(page.Url, Screen.Laptop);
         await sight.Expect(".hero-word").ToHaveTextAsync("Holding");
         sight.Allowed = new Regex("ERR_|Failed to load");
@@ -108,6 +108,24 @@ public sealed class PageTests(BrowserFixture browser)
         await sight.Expect(".hero-word").ToBeVisibleAsync();
         Assert.DoesNotContain(token, await sight.Page.ContentAsync(), StringComparison.Ordinal);
         File.Delete(file);
+    }
+
+    [Theory]
+    [InlineData("laptop")]
+    [InlineData("phone")]
+    public async Task ChooseABank_ShowsHealthBesideAShort(string screen)
+    {
+        await using var page = await QuietPage.OpenAsync();
+        await using var sight = await browser.LookAsync(new Uri(page.Url, "#/choose"), Screen.Of(screen));
+        await sight.Page.GetByLabel("Unit").FillAsync("resistor 240 ohm");
+        await sight.Page.GetByLabel("Lamps at hand").FillAsync("25 W, 60 W, 100 W");
+        await sight.Page.GetByRole(AriaRole.Button, new() { Name = "Rank the banks" }).ClickAsync();
+        await sight.Expect(".choices li").ToContainTextAsync("Fits.");
+
+        Assert.Equal("full", (await sight.Page.Locator(".choices li").First.Locator(".lamp-row").Nth(1).TextContentAsync())?.Trim());
+        Assert.NotEqual("full", (await sight.Page.Locator(".choices li").First.Locator(".lamp-row").Nth(0).TextContentAsync())?.Trim());
+        await sight.Expect(".steps li").ToContainTextAsync("mains off");
+        await sight.PictureAsync("choose");
     }
 
     [Fact]

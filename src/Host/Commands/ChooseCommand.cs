@@ -60,7 +60,8 @@ internal sealed class ChooseCommand : CliCommand
         return Task.FromResult(answer.Choices.Any(choice => choice.Exists) ? ExitCode.Done : ExitCode.No);
     }
 
-    private static Lamp[] Shelf(string? text, Mains mains, LampInventory inventory)
+    /// <summary>The lamps at hand: those named, else the inventory, else the usual ones.</summary>
+    internal static Lamp[] Shelf(string? text, Mains mains, LampInventory inventory)
     {
         if (text is null && inventory.Names.Count > 0)
         {

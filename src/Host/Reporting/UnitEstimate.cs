@@ -19,13 +19,20 @@ internal sealed class UnitEstimate
     private readonly Bank _bank;
     private readonly Unit _unit;
     private readonly Analysis.Prediction.PredictedMeter _meter;
+    private readonly Lazy<ModelInference> _byModel;
+    private readonly Lazy<UnitInference> _byCurrent;
 
     private UnitEstimate(Mains mains, Bank bank, Unit unit, BenchOptions? bench)
     {
         (_mains, _bank, _unit) = (mains, bank, unit);
         var line = bench?.Meters.FirstOrDefault(meter => meter.Quantity == Quantity.LineCurrent);
         _meter = line is null ? new Analysis.Prediction.PredictedMeter() : BenchPlan.Predicted(line);
+        _byModel = new(() => new ModelInference(_mains, _bank, _unit, _meter));
+        _byCurrent = new(() => new UnitInference(_mains, _bank, _meter));
     }
+
+    /// <summary>For a bench as it stands. Not thread-safe.</summary>
+    public static UnitEstimate For(BenchPlan plan) => new(plan.Mains, plan.Bank, plan.Unit, plan.Options);
 
     /// <summary>For a run; null with the reason where its texts do not say enough.</summary>
     public static (UnitEstimate? Estimate, string? WhyNot) For(RunRecord record)
@@ -51,9 +58,9 @@ internal sealed class UnitEstimate
         }
 
         var nature = Nature(_unit.Text);
-        return nature != UnitNature.Resistive && new ModelInference(_mains, _bank, _unit, _meter).TryInfer(lineAmps, mainsVolts, out var byModel, out _)
+        return nature != UnitNature.Resistive && _byModel.Value.TryInfer(lineAmps, mainsVolts, out var byModel, out _)
             ? byModel
-            : new UnitInference(_mains, _bank, _meter).Infer(lineAmps, mainsVolts, nature);
+            : _byCurrent.Value.Infer(lineAmps, mainsVolts, nature);
     }
 
     private static UnitNature Nature(string unit) => unit.Split(' ')[0] switch

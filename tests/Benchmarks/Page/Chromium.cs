@@ -54,6 +54,11 @@ internal sealed class Chromium : IAsyncDisposable
     public async Task<JsonElement> AskAsync(string expression)
     {
         var answer = await SendAsync("Runtime.evaluate", new { expression, returnByValue = true, awaitPromise = true });
+        if (answer.TryGetProperty("exceptionDetails", out var fault))
+        {
+            throw new InvalidOperationException(fault.ToString());
+        }
+
         return answer.GetProperty("result").TryGetProperty("value", out var value) ? value : default;
     }
 

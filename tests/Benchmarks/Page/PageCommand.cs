@@ -86,8 +86,9 @@ internal static class PageCommand
 
     // The page leaves a mark at each drawing; waits for the first that is as fine as the screen shows, and for its frame.
     private static string Drawn(double after) => string.Create(CultureInfo.InvariantCulture, $$"""
-        new Promise((resolve) => {
+        new Promise((resolve, reject) => {
           let first = null;
+          setTimeout(() => reject(new Error("nothing fine was drawn within ten seconds")), 10000);
           const look = () => {
             const mark = performance.getEntriesByName("trace-drawn").at(-1);
             if (mark && mark.startTime > {{after}}) {

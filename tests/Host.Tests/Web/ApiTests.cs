@@ -32,6 +32,21 @@ public sealed class ApiTests
     }
 
     [Fact]
+    public async Task Choose_ThreeLamps_HasTheNamesOfTheContractAndTheLampsOfEach()
+    {
+        await using var page = await QuietPage.OpenAsync();
+
+        var chosen = await GetAsync(page, "/api/choose?mains=120 V 60 Hz&unit=resistor 240 ohm&lamps=25 W, 60 W, 100 W");
+
+        var first = chosen.GetProperty("choices")[0];
+        string[] choice = ["bank", "lineAmps", "unitVolts", "unitVoltsShare", "shortedAmps", "contrast", "exists", "verdict", "reason"];
+        Assert.Superset(new HashSet<string>(choice), Names(first));
+        Assert.Superset(new HashSet<string>(["bank", "expectLowAmps", "expectHighAmps", "stopAboveAmps", "why"]), Names(chosen.GetProperty("bringUp")[0]));
+        var glow = (string which) => first.GetProperty(which).EnumerateArray().Max(lamp => lamp.GetProperty("glow").GetDouble());
+        Assert.True(glow("shortedLamps") > 5 * glow("healthyLamps"));
+    }
+
+    [Fact]
     public async Task Predict_BadText_IsAProblemThatShowsWhere()
     {
         await using var page = await QuietPage.OpenAsync();
@@ -88,7 +103,7 @@ public sealed class ApiTests
             "/api/benches", "/api/benches/{bench}", "/api/benches/{bench}/trace", "/api/benches/{bench}/soak", "/api/benches/{bench}/soak/end",
             "/api/benches/{bench}/announcements", "/api/benches/{bench}/notes", "/api/benches/{bench}/bring-up/next", "/api/benches/{bench}/bring-up/leave",
             "/api/benches/{bench}/alerts/{number}/acknowledge", "/api/benches/{bench}/alerts/{number}/shelve", "/api/benches/{bench}/alerts/{number}/unshelve",
-            "/api/benches/{bench}/alerts/{number}/reset", "/api/predict", "/api/bring-up", "/api/runs", "/api/runs/{run}", "/api/runs/{run}/series", "/api/runs/{run}/export", "/api/runs/{run}/report",
+            "/api/benches/{bench}/alerts/{number}/reset", "/api/predict", "/api/choose", "/api/bring-up", "/api/runs", "/api/runs/{run}", "/api/runs/{run}/series", "/api/runs/{run}/export", "/api/runs/{run}/report",
             "/api/meters", "/api/events", "/api/session",
         ];
         Assert.Superset(new HashSet<string>(expected), Names(document.GetProperty("paths")));

@@ -39,6 +39,12 @@ test("withInterval_WideInterval_DoesNotPretend", () => {
   assert.equal(plain(withInterval(212.4, 120, 410, "Ω").text), "212 Ω");
 });
 
+test("withInterval_BoundsAlone_SaysBetween", () => {
+  const { text, interval } = withInterval(null, 61.2, 103.9, "V");
+  assert.equal(text, "–");
+  assert.equal(plain(interval), "between 61 and 104 V");
+});
+
 test("withInterval_OnlyTheUpperEnd_SaysBelow", () => {
   assert.equal(plain(withInterval(null, null, 18.2, "Ω").text), "< 18 Ω");
 });

@@ -63,6 +63,10 @@ function decimalsOfInterval(low, high) {
  * says so: `< 18 Ω`.
  */
 export function withInterval(value, low, high, unit) {
+  if (!isNumber(value) && isNumber(low) && isNumber(high)) {
+    return { text: NOTHING, interval: `between ${range(low, high, unit).replace(" to ", " and ")}` };
+  }
+
   if (!isNumber(value) && isNumber(high)) {
     return { text: `<${NO_BREAK}${withUnit(high, unit, 2)}`, interval: "below this; more cannot be said" };
   }

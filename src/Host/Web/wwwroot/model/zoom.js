@@ -45,9 +45,9 @@ export function request(window, extent, pixels) {
   return { from, to, points: 2 ** Math.ceil(Math.log2(points)) };
 }
 
-/** Whether an answer with this bucket length is fine enough to show the window on so many pixels. */
+/** Whether an answer is fine enough for the window on so many pixels: a bucket may be two of them, because the host rounds long ones up. */
 export function fineEnough(answer, window, pixels) {
-  return answer.from <= window.from && answer.to >= window.to && answer.bucketSeconds <= (1.5 * (window.to - window.from)) / pixels;
+  return answer.from <= window.from && answer.to >= window.to && answer.bucketSeconds <= (2 * (window.to - window.from)) / pixels;
 }
 
 /** What one key does to a trace; null where the key is not ours. */

@@ -26,21 +26,30 @@ export function chooseView({ state }) {
 
   async function ask() {
     const found = await get("/api/choose" + query({ mains: mains.value, unit: unit.value, lamps: lamps.value }));
-    answer.replaceChildren(table(found.choices), bringUp(found.bringUp), cautions());
+    answer.replaceChildren(table(found.choices, found.considered), bringUp(found.bringUp), ...found.notes.map((note) => h("p", { class: "quiet" }, note)), cautions());
   }
 
   act(button, place, ask);
   return { node, title: "Choose a bank", follows: null, update() {}, close() {}, standsFor: () => null };
 }
 
+const VERDICTS = {
+  fits: "Fits.",
+  starves: "Starves the unit.",
+  "hides-short": "Hides a short.",
+  "lets-through": "Lets too much through.",
+  "cannot-run": "Cannot run it.",
+};
+
 const lampsOrNone = (lamps) => (lamps?.length ? lampRow(lamps) : h("span", { class: "quiet" }, "–"));
 
-function table(choices) {
+function table(choices, considered) {
   return h("section", { class: "sheet", "aria-labelledby": "choices" },
     h("h2", { id: "choices" }, "Banks, best first"),
+    h("p", { class: "quiet" }, `The best ${choices.length} of ${considered} that these lamps can make.`),
     h("ol", { class: "choices" }, choices.map((choice) => h("li", { class: choice.exists ? "" : "cannot" },
       h("p", { class: "choice-bank" }, choice.bank),
-      h("p", { class: "choice-verdict" }, h("strong", {}, choice.verdict), " ", choice.reason),
+      h("p", { class: "choice-verdict" }, h("strong", {}, VERDICTS[choice.verdict] ?? choice.verdict), " ", choice.reason),
       h("div", { class: "choice-side" }, h("span", {}, "healthy"), lampsOrNone(choice.healthyLamps), h("strong", {}, withUnit(choice.lineAmps, "A"))),
       h("div", { class: "choice-side" }, h("span", {}, "shorted"), lampsOrNone(choice.shortedLamps), h("strong", {}, withUnit(choice.shortedAmps, "A"))),
       h("p", { class: "choice-more" },
