@@ -43,7 +43,7 @@ public sealed class PageTests(BrowserFixture browser)
     public async Task DevelopingShort_IsSeenFromThreeMetres_BeforeItIsCritical(string screen)
     {
         await using var page = await QuietPage.OpenAsync();
-        Soak(page, page.Plans[0], 0.306);
+        Soak(page, page.Plans[0], 0.306, creep: 0.046);
         await using var sight = await browser.LookAsync(page.Url, Screen.Of(screen));
         await sight.Expect(".hero-word").ToHaveTextAsync("Holding");
         await sight.PictureAsync("holding");
@@ -117,9 +117,11 @@ public sealed class PageTests(BrowserFixture browser)
     {
         await using var page = await QuietPage.OpenAsync();
         await using var sight = await browser.LookAsync(new Uri(page.Url, "#/choose"), Screen.Of(screen));
+        await Assertions.Expect(sight.Page.Locator(".choices li")).ToHaveCountAsync(40);
         await sight.Page.GetByLabel("Unit").FillAsync("resistor 240 ohm");
         await sight.Page.GetByLabel("Lamps at hand").FillAsync("25 W, 60 W, 100 W");
         await sight.Page.GetByRole(AriaRole.Button, new() { Name = "Rank the banks" }).ClickAsync();
+        await sight.Expect("#choices + p").Not.ToContainTextAsync("best 40");
         await sight.Expect(".choices li").ToContainTextAsync("Fits.");
 
         Assert.Equal("full", (await sight.Page.Locator(".choices li").First.Locator(".lamp-row").Nth(1).TextContentAsync())?.Trim());
@@ -150,13 +152,13 @@ public sealed class PageTests(BrowserFixture browser)
         await sight.PictureAsync("compared");
     }
 
-    internal static void Soak(QuietPage page, BenchPlan plan, double amps)
+    internal static void Soak(QuietPage page, BenchPlan plan, double amps, double creep = 0)
     {
         page.Board.Hear(new RunBegan(plan.Name, "20260402-001", plan, DateTimeOffset.UnixEpoch.AddDays(20545)));
         page.Board.Hear(new DeskChanged(plan.Name, Idle: false, CanStart: false, CanEnd: true));
         for (var second = 0; second < 3600; second += 10)
         {
-            var seen = new Observation(second, second == 0 ? plan.Prediction.Inrush.FirstReadingAmps : amps * (1 + (0.004 * Math.Sin(second / 200.0))));
+            var seen = new Observation(second, second == 0 ? plan.Prediction.Inrush.FirstReadingAmps : amps * (1 + (0.004 * Math.Sin(second / 200.0)) + (second < 2400 ? 0 : creep * Math.Pow((second - 2400) / 1200.0, 2))));
             page.Board.Hear(new Observed(plan.Name, seen, WatchPhase.Watching, () => "All is well: the unit draws what it should."));
         }
     }
@@ -168,5 +170,9 @@ public sealed class PageTests(BrowserFixture browser)
         page.Board.Hear(new FindingChanged(bench, 3400, new FindingChange(ChangeKind.Raised, finding)));
         var alert = new Alert(bench, 1, signature.Text(), severity, state, 3400, Text) { Standing = true, FindingNumber = 1 };
         page.Board.Hear(new AlertChanged(bench, new AlertChange(3400, AlertSteps.Raised, alert)));
+        if (state == AlertState.Unacknowledged)
+        {
+            page.Board.Hear(new Observed(bench, new Observation(3600, page.Plans[0].Prediction.Steady.LineAmps * 1.046), WatchPhase.Watching, () => Text));
+        }
     }
 }

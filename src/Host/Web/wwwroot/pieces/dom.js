@@ -54,7 +54,11 @@ export async function act(button, place, work) {
   try {
     return await work();
   } catch (error) {
-    place.replaceChildren(problemBox(error));
+    // Whoever left the view, or asked anew, wants no answer any more.
+    if (error.name !== "AbortError") {
+      place.replaceChildren(problemBox(error));
+    }
+
     return undefined;
   } finally {
     button.disabled = false;

@@ -23,14 +23,17 @@ export function chooseView({ state }) {
   field(mains, "Mains", "such as 230 V 50 Hz"), field(unit, "Unit", "such as switch-mode 60 W"),
   field(lamps, "Lamps at hand", "with commas between; empty for the usual ones"), h("div", {}, button), place);
   const node = h("div", { class: "stack" }, h("h1", {}, "Choose a bank"), form, answer);
+  let asking = null;
 
   async function ask() {
-    const found = await get("/api/choose" + query({ mains: mains.value, unit: unit.value, lamps: lamps.value }));
+    asking?.abort();
+    asking = new AbortController();
+    const found = await get("/api/choose" + query({ mains: mains.value, unit: unit.value, lamps: lamps.value }), asking.signal);
     answer.replaceChildren(table(found.choices, found.considered), bringUp(found.bringUp), ...found.notes.map((note) => h("p", { class: "quiet" }, note)), cautions());
   }
 
   act(button, place, ask);
-  return { node, title: "Choose a bank", follows: null, update() {}, close() {}, standsFor: () => null };
+  return { node, title: "Choose a bank", follows: null, update() {}, close: () => asking?.abort(), standsFor: () => null };
 }
 
 const VERDICTS = {
