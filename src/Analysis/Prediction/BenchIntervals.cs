@@ -130,6 +130,7 @@ internal sealed class BenchIntervals(BenchInputs inputs, BenchInputs joined, Pre
 
     private void FillTransient(BenchState healthy, IDictionary<string, Interval> intervals)
     {
+        var horizon = healthy.Transients.Horizon(healthy.Transient, healthy.Point.Amps);
         var spread = Spread(joined, Numbers, healthy.TransientNumbers, skipTransient: false);
         intervals["inrush.peakAmps"] = spread[TransientEvaluator.Peak].Interval;
         intervals["inrush.firstCycleRmsAmps"] = spread[TransientEvaluator.FirstCycle].Interval;
@@ -147,7 +148,7 @@ internal sealed class BenchIntervals(BenchInputs inputs, BenchInputs joined, Pre
         double[] Numbers(double[] values)
         {
             var steadyAmps = healthy.JoinedEvaluator!.At(values)[SteadyEvaluator.Amps];
-            return healthy.Transients.Numbers(healthy.Transients.Run(values, steadyAmps), steadyAmps);
+            return healthy.Transients.Numbers(healthy.Transients.Run(values, steadyAmps, horizon), steadyAmps);
         }
     }
 

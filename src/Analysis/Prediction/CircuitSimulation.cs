@@ -62,7 +62,7 @@ public sealed partial class CircuitSimulation
         nodes = [.. network.Parent.Select((parent, node) =>
             new Node(network.Leaf[node], parent, network.IsParallel[node], parent >= 0 && network.IsParallel[parent]))];
         leastOhms = sourceOhms + bank.ColdOhms;
-        mostOhms = sourceOhms + network.Lamps.Sum(lamp => lamp.Filament?.HotOhms ?? lamp.ResistorOhms);
+        mostOhms = sourceOhms + MostOhms(bank.Root);
         this.phaseDegrees = phaseDegrees;
         kelvin = new double[lamps.Length];
         stageKelvin = new double[lamps.Length];
@@ -204,6 +204,15 @@ public sealed partial class CircuitSimulation
         HasFilament = lamp.Filament is not null,
         Filament = lamp.Filament is null ? default : new FilamentCoefficients(lamp.Filament, grid),
         Siemens = lamp.Filament is null ? 1 / lamp.ResistorOhms : 0,
+    };
+
+    // Hot, and with all but the weakest branch of every parallel part burnt out.
+    private static double MostOhms(BankPart part) => part switch
+    {
+        LampPart leaf => leaf.Lamp.Filament?.HotOhms ?? leaf.Lamp.ResistorOhms,
+        SeriesPart series => series.Parts.Sum(MostOhms),
+        ParallelPart parallel => parallel.Parts.Max(MostOhms),
+        _ => 0,
     };
 
     private static double[][] MakeRates(int length) => [new double[length], new double[length], new double[length], new double[length]];

@@ -9,8 +9,9 @@ public sealed class SwitchOn
 {
     private const double SettledShare = 0.10;
 
-    // Ends once a cycle's RMS has stayed this near the steady value for this long.
-    private const double QuietShare = 0.004;
+    // Ends once a cycle's RMS has stayed this near the steady value, and hardly moved from cycle to cycle, for this long.
+    private const double NearShare = 0.012;
+    private const double MovingShare = 0.0004;
     private const double QuietSeconds = 0.25;
 
     private readonly List<double> amps = [];
@@ -56,7 +57,7 @@ public sealed class SwitchOn
         var run = new SwitchOn(simulation.FilamentKelvin.Length, simulation);
         run.Note(simulation);
         var squares = 0.0;
-        var quiet = 0.0;
+        var (quiet, before) = (0.0, 0.0);
         while (simulation.Seconds < mostSeconds)
         {
             simulation.Step();
@@ -67,7 +68,8 @@ public sealed class SwitchOn
                 var rms = Math.Sqrt(squares / run.perCycle);
                 squares = 0;
                 var cycle = run.StepSeconds * run.perCycle;
-                quiet = Math.Abs(rms / steadyAmps - 1) < QuietShare ? quiet + cycle : 0;
+                var isQuiet = Math.Abs(rms / steadyAmps - 1) < NearShare && Math.Abs(rms - before) < MovingShare * rms;
+                (quiet, before) = (isQuiet ? quiet + cycle : 0, rms);
                 if (quiet >= QuietSeconds && simulation.Seconds >= leastSeconds && run.AllGlow(willGlow))
                 {
                     break;

@@ -17,10 +17,19 @@ internal sealed class TransientEvaluator(
     /// <summary>Simulates the bench of these values until all is quiet.</summary>
     /// <param name="values">Of the inputs.</param>
     /// <param name="steadyAmps">Where that bench's current ends.</param>
-    public SwitchOn Run(ReadOnlySpan<double> values, double steadyAmps)
+    /// <param name="longestSeconds">To end at the latest, if before the limit of them all.</param>
+    public SwitchOn Run(ReadOnlySpan<double> values, double steadyAmps, double longestSeconds = double.MaxValue)
     {
         var simulation = Make(values);
-        return SwitchOn.Run(simulation, steadyAmps, willGlow, LeastSeconds, mostSeconds);
+        return SwitchOn.Run(simulation, steadyAmps, willGlow, LeastSeconds, Math.Min(mostSeconds, longestSeconds));
+    }
+
+    /// <summary>How long a bench a little different from this run's must be simulated for the same numbers: what happened, half as long again and more.</summary>
+    public double Horizon(SwitchOn run, double steadyAmps)
+    {
+        var settle = run.SettleSeconds(steadyAmps);
+        var glow = run.FirstGlowSeconds.Where(double.IsFinite).DefaultIfEmpty(0).Max();
+        return double.IsNaN(settle) ? mostSeconds : Math.Max(LeastSeconds, 2.5 * Math.Max(settle, glow) + 0.3);
     }
 
     /// <summary>The numbers of a run.</summary>

@@ -46,6 +46,19 @@ public sealed class TungstenPropertiesTests
     public void SpecificHeat_SecondPublishedSet_WithinThreePercent(double kelvin, double published) =>
         Assert.Equal(1, TungstenProperties.SpecificHeat(kelvin) / published, 0.03);
 
+    // The stated bounds: what another choice of published tables would change.
+    [Fact]
+    public void Tables_OtherPublishedSet_BoundsTheOneInUse()
+    {
+        for (var row = 15; row <= 30; row++)
+        {
+            var kelvin = TungstenTable.FirstKelvin + row * TungstenTable.StepKelvin;
+            Assert.InRange(TungstenTable.ModernTotalEmissivity[row] / TungstenProperties.Emissivity(kelvin), 0.90, 0.95);
+            var pure = TungstenTable.WhiteMingesMicroOhmCentimetres[row] / TungstenTable.WhiteMingesMicroOhmCentimetres[0];
+            Assert.InRange(pure / TungstenProperties.ResistanceRatio(kelvin), 1.03, 1.06);
+        }
+    }
+
     [Fact]
     public void KelvinOfRatio_OfAnyTemperature_GivesItBack()
     {
