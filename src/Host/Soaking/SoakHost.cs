@@ -6,6 +6,7 @@ using Lampwarden.Host.Recording.Forwarding;
 using Lampwarden.Host.Unattended;
 using Lampwarden.Host.Web;
 using Lampwarden.Host.Web.Live;
+using Microsoft.Extensions.Hosting.WindowsServices;
 using Serilog;
 using Serilog.Events;
 
@@ -50,6 +51,12 @@ public static class SoakHost
         builder.Services.AddSingleton<ILoggerFactory>(log);
         builder.Services.Configure<HostOptions>(options => options.ShutdownTimeout = TimeSpan.FromSeconds(15));
         builder.Services.AddSingleton<IHostLifetime, CommandLifetime>();
+        if (WindowsServiceHelpers.IsWindowsService())
+        {
+            // There the service manager, not the command line, says when to stop.
+            builder.Services.AddWindowsService(options => options.ServiceName = "Lampwarden");
+        }
+
         builder.Services.AddSingleton(services => new SoakResults(plans.Count, services.GetRequiredService<IHostApplicationLifetime>().StopApplication));
         builder.Services.AddSingleton(new SoakSurroundings(
             time,
