@@ -59,19 +59,19 @@ internal static partial class Log
     [LoggerMessage(EventId = 307, EventName = "AlertFlood", Level = LogLevel.Warning, Message = "Route {Route}: {Count} alerts within ten minutes; they are told in groups until it calms down")]
     public static partial void AlertFlood(ILogger logger, string route, int count);
 
-    [LoggerMessage(EventId = 400, EventName = "LoopStuck", Level = LogLevel.Critical, Message = "No reading of {Benches} was handled for {Seconds:F0} s: they are not watched")]
+    [LoggerMessage(EventId = 600, EventName = "LoopStuck", Level = LogLevel.Critical, Message = "No reading of {Benches} was handled for {Seconds:F0} s: they are not watched")]
     public static partial void LoopStuck(ILogger logger, string benches, double seconds);
 
-    [LoggerMessage(EventId = 401, EventName = "PingFails", Level = LogLevel.Warning, Message = "The ping to {Place} fails: {Why}")]
+    [LoggerMessage(EventId = 601, EventName = "PingFails", Level = LogLevel.Warning, Message = "The ping to {Place} fails: {Why}")]
     public static partial void PingFails(ILogger logger, string place, string why);
 
-    [LoggerMessage(EventId = 402, EventName = "PingWorksAgain", Level = LogLevel.Information, Message = "The ping works again")]
+    [LoggerMessage(EventId = 602, EventName = "PingWorksAgain", Level = LogLevel.Information, Message = "The ping works again")]
     public static partial void PingWorksAgain(ILogger logger);
 
-    [LoggerMessage(EventId = 403, EventName = "SettingsReloaded", Level = LogLevel.Information, Message = "{Path} was read again: {What}")]
+    [LoggerMessage(EventId = 603, EventName = "SettingsReloaded", Level = LogLevel.Information, Message = "{Path} was read again: {What}")]
     public static partial void SettingsReloaded(ILogger logger, string path, string what);
 
-    [LoggerMessage(EventId = 404, EventName = "SettingsRefused", Level = LogLevel.Error, Message = "{Path} was changed but cannot be used, the settings in force stay: {Faults}")]
+    [LoggerMessage(EventId = 604, EventName = "SettingsRefused", Level = LogLevel.Error, Message = "{Path} was changed but cannot be used, the settings in force stay: {Faults}")]
     public static partial void SettingsRefused(ILogger logger, string path, string faults);
 
     [LoggerMessage(EventId = 500, EventName = "CutOffTripped", Level = LogLevel.Critical, Message = "{Bench}: cut-off tripped by {Signature} (dry run: {DryRun})")]

@@ -46,6 +46,7 @@ switch (args.FirstOrDefault())
         Console.Error.WriteLine("  or: meters [flood|idle|crowd]; fuzz-meters [--lines N] [--seed S]; fuzz-session [--minutes M] [--seed S]");
         Console.Error.WriteLine("  or: physics; physics-checks");
         Console.Error.WriteLine("  or: page [look-back|memory|forty] (needs Chromium)");
-        Console.Error.WriteLine("  or: faults [--only TEXT]; shop [--seconds S [--benches 5,10,20]]; long-haul [--shifts N [--speed X]]");
+        Console.Error.WriteLine("  or: faults [--only TEXT]; shop [--seconds S [--benches 5,10,20]]; long-haul [--shifts N]");
+        Console.Error.WriteLine("  or: faults [--only TEXT]; shop [--seconds S [--benches 5,10,20]]; long-haul [--shifts N]");
         return 2;
 }

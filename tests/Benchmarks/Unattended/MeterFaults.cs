@@ -14,7 +14,7 @@ internal static class MeterFaults
         Gap("lines nobody asked for, without pause", MeterTrouble.Babbling, expectAlert: false),
         Gap("it answers the question before last", MeterTrouble.Late, expectAlert: false),
         Gap("it is switched off and on", MeterTrouble.Restarted, expectAlert: false),
-        new("meter", "it shows the same value whatever is measured, while the unit shorts", "a person is told that its value does not move", StuckAsync),
+        new("meter", "after a minute it shows the same value whatever is measured, while the unit shorts", "a person is told that its value does not move", StuckAsync),
     ];
 
     private static Fault Gap(string injected, MeterTrouble kind, bool expectAlert) => new(
@@ -42,8 +42,8 @@ internal static class MeterFaults
         using var inbox = new Inbox();
         await using var shift = Shift.Prepare(scenario =>
         {
-            Shift.Trouble(MeterTrouble.Stuck, 8, 600)(scenario);
-            Shift.Short(12)(scenario);
+            Shift.Trouble(MeterTrouble.Stuck, 60, 600)(scenario);
+            Shift.Short(65)(scenario);
         });
         await shift.StartAsync($$"""{ "routes": [ {{inbox.Route("far")}} ] }""");
         var letter = await inbox.UntilAsync(letter => letter.Cause == "meter-stuck", "an alert meter-stuck", 150);
