@@ -51,7 +51,7 @@ internal static class Hypotheses
         Try(Cause.UnitTakesMore, null, Math.Log(0.35) + Flat(change, 0, 2.5));
         Try(Cause.UnitTakesLess, null, Math.Log(0.15) + Flat(change, DarkLog, 0));
         Try(Cause.CircuitOpened, null, Math.Log(0.35) + Flat(change, -12, -1.3) + 2);
-        Try(Cause.MeterScale, null, Math.Log(0.01) + Math.Max(Near(change, Math.Log(10), 0.03, sd), Near(change, -Math.Log(10), 0.03, sd)));
+        Try(Cause.MeterScale, null, Math.Log(0.01) + Math.Max(Near(change, Math.Log(10), 0.02, sd), Near(change, -Math.Log(10), 0.02, sd)));
         if (!mainsMeasured)
         {
             Try(Cause.MainsMoved, null, Math.Log(0.2) + Near(change, 0, 0.03, sd));

@@ -44,6 +44,7 @@ public sealed partial class Watch
         limits = new AbsoluteLimits(book);
         noise = new MeterNoise(settings.ReadingsPerSecond);
         mains = new MainsView(settings.NominalMainsVolts);
+        Notes = Advice.Limits(settings);
         slow = new SlowChannel(settings.MainsMeasured);
         stuck = new StuckCode(settings.ReadingsPerSecond);
         AssumeExponent();
@@ -59,6 +60,9 @@ public sealed partial class Watch
 
     /// <summary>Stretches without readings, oldest first.</summary>
     public IReadOnlyList<WatchGap> Gaps => trouble.Gaps;
+
+    /// <summary>What a user must know before the run about what this watch will not see, plain sentences; empty where all is measured and predicted.</summary>
+    public IReadOnlyList<string> Notes { get; }
 
     /// <summary>What the watch thinks at the moment, in one plain sentence.</summary>
     public string Sentence
