@@ -21,7 +21,7 @@ internal static class ParserFuzz
         foreach (var dialect in LineDialect.Names)
         {
             var meter = new MeterOptions { Name = "fuzz", Protocol = { Kind = "lines", Pattern = LineDialect.Pattern(dialect) } };
-            meter.Protocol.RefuseWords = dialect == "columns" ? ["H"] : ["HOLD", "LOBAT"];
+            meter.Protocol.RefuseWords = SecondOpinion.RefuseWords(dialect);
             yield return Run(dialect, lines, seed, new LinePattern(meter),
                 noise => Noise.Ascii(LineDialect.Write(dialect, MeasuredQuantity.LineCurrent, noise.Random.Next(20) == 0 ? double.PositiveInfinity : noise.Random.NextDouble() * 9, 0.0001)),
                 line => SecondOpinion.Dialect(dialect, line));

@@ -16,6 +16,9 @@ internal static class SecondOpinion
         return Math.Abs(value) >= 9.9e37 * 0.9999 ? double.NaN : value;
     }
 
+    /// <summary>What marks a line of a dialect as no reading; what <see cref="Dialect"/> looks for.</summary>
+    public static IList<string> RefuseWords(string dialect) => dialect == "columns" ? ["H"] : ["HOLD", "LOBAT"];
+
     /// <summary>A in a line of one of the example dialects; NaN when it holds none.</summary>
     public static double Dialect(string dialect, ReadOnlySpan<byte> line)
     {

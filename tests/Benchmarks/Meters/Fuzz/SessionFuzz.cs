@@ -93,6 +93,7 @@ internal sealed class SessionFuzz
         {
             options.Protocol.Kind = "lines";
             options.Protocol.Pattern = LineDialect.Pattern(_dialect);
+            options.Protocol.RefuseWords = SecondOpinion.RefuseWords(_dialect);
         }
 
         options.Protocol.StatusSeconds = 1;
