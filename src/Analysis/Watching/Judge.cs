@@ -6,7 +6,7 @@ namespace Lampwarden.Analysis.Watching;
 internal static class Judge
 {
     public static Judgement Decide(
-        WatchSettings settings, IReadOnlyList<Finding> findings, double endSeconds, double gapSeconds, long readings, double levelAmps)
+        WatchSettings settings, IReadOnlyList<Finding> findings, double endSeconds, double gapSeconds, long readings, double levelAmps, double referenceAmps)
     {
         var reasons = new List<string>();
         var verdict = Verdict.Passed;
@@ -19,14 +19,12 @@ internal static class Judge
             }
         }
 
-        if (settings.Expectation is { } expected && double.IsFinite(levelAmps))
+        var percent = ((levelAmps / referenceAmps) - 1) * 100;
+        if (Math.Abs(percent) > settings.Acceptance.SteadyWithinPercent)
         {
-            var percent = (levelAmps / expected.SteadyAmps - 1) * 100;
-            if (Math.Abs(percent) > settings.Acceptance.SteadyWithinPercent)
-            {
-                verdict = Verdict.Failed;
-                reasons.Add(Invariant($"The steady current was {Advice.Amps(levelAmps)}, {percent:+0.#;-0.#} % from the predicted {Advice.Amps(expected.SteadyAmps)}; allowed are {settings.Acceptance.SteadyWithinPercent:0.#} %."));
-            }
+            verdict = Verdict.Failed;
+            var reference = settings.Expectation is null ? "its level after warm-up," : "the predicted";
+            reasons.Add(Invariant($"The steady current was {Advice.Amps(levelAmps)}, {percent:+0.#;-0.#} % from {reference} {Advice.Amps(referenceAmps)}; allowed are {settings.Acceptance.SteadyWithinPercent:0.#} %."));
         }
 
         var covered = endSeconds > 0 ? Math.Clamp(1 - gapSeconds / endSeconds, 0, 1) : 0;
@@ -36,6 +34,11 @@ internal static class Judge
             if (readings == 0)
             {
                 reasons.Add("No reading came, so nothing can be said about the unit.");
+            }
+
+            foreach (var finding in findings.Where(IsOfBank))
+            {
+                reasons.Add(Invariant($"The limiter itself failed at {Clock(finding.OnsetSeconds)}: {finding.Explanation}"));
             }
 
             if (settings.PlannedHours is { } planned && hours < planned * 0.999)
@@ -63,14 +66,18 @@ internal static class Judge
             ["coveredPercent"] = covered * 100,
             ["gapSeconds"] = gapSeconds,
             ["steadyAmps"] = levelAmps,
-            ["expectedAmps"] = settings.Expectation?.SteadyAmps ?? double.NaN,
+            ["expectedAmps"] = referenceAmps,
             ["findings"] = findings.Count,
         });
     }
 
     /// <summary>A warning or worse about anything but the meter and the mains fails the unit, cleared or not: a fault that came and went is a fault.</summary>
     private static bool SpeaksAgainstUnit(Finding finding) => finding.Severity >= Severity.Warning && finding.Signature
-        is not (Signature.MeterSilent or Signature.MeterStuck or Signature.MeterOverload or Signature.MainsShift);
+        is not (Signature.MeterSilent or Signature.MeterStuck or Signature.MeterOverload or Signature.MainsShift) && !IsOfBank(finding);
+
+    /// <summary>A lamp known by name has gone dark: the limiter's fault, not the unit's, but the soak was not the one planned.</summary>
+    private static bool IsOfBank(Finding finding) =>
+        finding.Signature == Signature.LampOut && finding.Severity >= Severity.Warning && finding.Evidence.ContainsKey("lampPredictedAmps");
 
     private static string Clock(double seconds) => Invariant($"{(int)(seconds / 3600)}:{(int)(seconds / 60) % 60:00}:{(int)seconds % 60:00}");
 }

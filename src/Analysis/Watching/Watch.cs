@@ -6,7 +6,7 @@ namespace Lampwarden.Analysis.Watching;
 /// </summary>
 public sealed partial class Watch
 {
-    private const int StateVersion = 4;
+    private const int StateVersion = 5;
     private const double LeastSettleSeconds = 5;
     private const double SlowInrushSeconds = 4, SlowInrushTimes = 8;
 
@@ -29,6 +29,7 @@ public sealed partial class Watch
     private double lastSeconds;
     private double lastReadingSeconds = double.NaN;
     private double announcedSeconds = double.NegativeInfinity;
+    private double armedAmps = double.NaN;
     private double holdUntilSeconds = double.NegativeInfinity;
     private long readings;
 
@@ -108,9 +109,17 @@ public sealed partial class Watch
     {
         ArgumentNullException.ThrowIfNull(what);
         var old = expectation;
-        if (what.Expectation is not null || what.Kind == AnnouncementKind.LoadChanged)
+        inrush.Skip();
+        expectationBefore = null;
+        armedAmps = double.NaN;
+        if (what.Expectation is not null)
         {
             expectation = what.Expectation;
+        }
+        else if (what.Kind == AnnouncementKind.LoadChanged && expectation is { } bench)
+        {
+            // Where the line will settle is not known any more; what the bank passes into a short is.
+            expectation = bench with { BandLowAmps = double.NaN, BandHighAmps = double.NaN, Lamps = [] };
         }
 
         if (what.Kind == AnnouncementKind.CyclesByItself)
@@ -144,7 +153,7 @@ public sealed partial class Watch
 
     /// <summary>What the run says about the unit if it ends now.</summary>
     public Judgement Judge(double endSeconds) => Watching.Judge.Decide(
-        settings, book.All, endSeconds, trouble.GapSeconds + trouble.OpenGapSeconds(endSeconds), readings, LevelAmps);
+        settings, book.All, endSeconds, trouble.GapSeconds + trouble.OpenGapSeconds(endSeconds), readings, LevelAmps, ReferenceAmps);
 
     /// <summary>The whole state, to be restored after a restart without any change in later findings.</summary>
     public byte[] Save() => StateStream.Save(Transfer);
@@ -164,6 +173,9 @@ public sealed partial class Watch
     private bool Settled(double seconds) => seconds - firstSeconds >= SettleSeconds;
 
     private double LevelAmps => slow.Started ? Math.Exp(slow.Foretell(lastSeconds, 0)) : double.NaN;
+
+    /// <summary>What the level at the end is held against: the prediction in force, else the unit's own level when it was first armed.</summary>
+    private double ReferenceAmps => expectation is { } expected ? double.IsNaN(expected.BandHighAmps) ? double.NaN : expected.SteadyAmps : armedAmps;
 
     private void AssumeExponent()
     {
@@ -207,6 +219,10 @@ public sealed partial class Watch
 
         lastReadingSeconds = seconds;
         WeighReading(o);
+        if (slow.Armed && double.IsNaN(armedAmps))
+        {
+            armedAmps = LevelAmps;
+        }
     }
 
     /// <summary>Whether a standing finding already says what a limit would: an excursion being followed, or a step to this very level.</summary>
@@ -291,6 +307,7 @@ public sealed partial class Watch
         state.Field(ref lastReadingSeconds);
         state.Field(ref announcedSeconds);
         state.Field(ref holdUntilSeconds);
+        state.Field(ref armedAmps);
         state.Field(ref readings);
         Expectation.Transfer(state, ref expectation);
         Expectation.Transfer(state, ref expectationBefore);

@@ -82,6 +82,29 @@ public sealed class WatchBehaviourTests
     }
 
     [Fact]
+    public void Judge_LampOfTheBankFailed_IsIncompleteNotFailed()
+    {
+        static double Amps(double t) => t < 5000 ? 0.5 : 0.5 * 0.806;
+        var watch = Bench(Bank, mains: true);
+        watch.Feed(Series.Of(5100, Amps, volts: Volts));
+        var judgement = watch.Judge(5100);
+        Assert.Equal(Verdict.Incomplete, judgement.Verdict);
+        Assert.StartsWith("The limiter itself failed", judgement.Reasons[0], StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public void Announce_LoadChanged_KeepsTheShortedLimitAndDropsTheBand()
+    {
+        var watch = Bench(Bank, mains: true);
+        watch.Feed(Series.Of(3000, _ => 0.5, volts: Volts));
+        watch.Announce(3000, new Announcement(AnnouncementKind.LoadChanged, "two bars on"));
+        watch.Feed(Series.Of(600, _ => 0.8, volts: Volts).Select(o => o with { Seconds = o.Seconds + 3000 }));
+        Assert.Empty(watch.Findings);
+        watch.Feed(Series.Of(30, _ => 1.19, volts: Volts).Select(o => o with { Seconds = o.Seconds + 3600 }));
+        Assert.Equal(Signature.HardShort, watch.Findings[0].Signature);
+    }
+
+    [Fact]
     public void Observe_MainsDipMeasured_IsAMainsEventOnly()
     {
         static double Dip(double t) => t is > 5000 and < 5020 ? 110 : Volts(t);
