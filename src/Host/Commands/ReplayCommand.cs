@@ -79,7 +79,7 @@ internal sealed class ReplayCommand : CliCommand
 
             if (own is not null)
             {
-                return BenchPlan.From(own, Inventory.Of([])).WatchSettings;
+                return BenchPlan.From(own, Inventory.Of(own.Inventory)).WatchSettings;
             }
 
             // Without a bench nothing is predicted: the watch goes by the series alone.

@@ -1,4 +1,5 @@
 using System.ComponentModel.DataAnnotations;
+using System.Text.Json.Serialization;
 using Lampwarden.Acquisition;
 
 namespace Lampwarden.Host.Configuration;
@@ -34,6 +35,13 @@ public sealed class BenchOptions
     /// <summary>How long, and what is good enough.</summary>
     public SoakOptions Soak { get; set; } = new();
 
+    /// <summary>
+    /// The inventory this bench's texts were read with. No key of the file: it is filled in when the file is read, so that
+    /// a stored run knows its lamps also after the inventory has changed.
+    /// </summary>
+    [JsonInclude]
+    public IReadOnlyList<LampOptions> Inventory { get; internal set; } = [];
+
     /// <summary>The same bench with another bank, unit or plan; null leaves a thing as it is, except the label, which belongs to the unit.</summary>
     internal BenchOptions With(
         string bank, string? unit = null, double? plannedHours = null, string? unitLabel = null, double? switchOnWaitSeconds = null) => new()
@@ -45,6 +53,7 @@ public sealed class BenchOptions
         UnitLabel = unitLabel,
         UnitModel = (unit ?? Unit) == Unit ? UnitModel : null,
         Meters = Meters,
+        Inventory = Inventory,
         Soak = new SoakOptions
         {
             PlannedHours = plannedHours ?? Soak.PlannedHours,

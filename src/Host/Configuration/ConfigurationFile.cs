@@ -41,6 +41,11 @@ public static class ConfigurationFile
         var options = new LampwardenOptions();
         new StrictBinder(faults).Bind(root, options, "");
         OptionsRules.Check(options, faults);
+        foreach (var bench in options.Benches)
+        {
+            bench.Inventory = [.. options.Lamps];
+        }
+
         AlertsCheck.Run(options, faults);
         return faults.Count == 0 ? options : throw new ConfigurationException(path, faults);
     }

@@ -40,6 +40,11 @@ public static class ConfigurationSchema
 
     private static JsonNode AddRules(JsonSchemaExporterContext context, JsonNode node)
     {
+        if (context.TypeInfo.Type == typeof(BenchOptions) && node["properties"] is JsonObject keys)
+        {
+            keys.Remove("inventory");
+        }
+
         if (node is not JsonObject schema || context.PropertyInfo?.AttributeProvider is not { } attributes)
         {
             return node;

@@ -16,7 +16,7 @@ internal sealed class StrictBinder(List<Fault> faults)
     /// <summary>Fills <paramref name="target"/> from <paramref name="section"/>; what is missing keeps its default.</summary>
     public void Bind(IConfiguration section, object target, string path)
     {
-        var properties = target.GetType().GetProperties().Where(property => property.CanWrite)
+        var properties = target.GetType().GetProperties().Where(property => property.SetMethod is { IsPublic: true })
             .ToDictionary(Name, StringComparer.OrdinalIgnoreCase);
         foreach (var child in section.GetChildren())
         {

@@ -40,9 +40,10 @@ internal sealed class UnitEstimate
         try
         {
             var mains = Mains.Parse(record.Info.Mains);
-            return (new UnitEstimate(mains, Bank.Parse(record.Info.Bank, mains), Unit.Parse(record.Info.Unit, mains), StoredSeries.BenchOf(record)), null);
+            var bench = StoredSeries.BenchOf(record);
+            return (new UnitEstimate(mains, Bank.Parse(record.Info.Bank, mains, Inventory.Of(bench?.Inventory ?? [])), Unit.Parse(record.Info.Unit, mains), bench), null);
         }
-        catch (FormatException)
+        catch (Exception error) when (error is FormatException or ArgumentException)
         {
             return (null, "not worked out: the record does not hold the bank's lamps or the unit's kind");
         }

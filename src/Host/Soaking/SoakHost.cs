@@ -65,7 +65,7 @@ public static class SoakHost
             board is null ? listenersAndOurs : [.. listenersAndOurs, board],
             attendance?.Rules));
         builder.Services.AddSingleton(services => plans.Select(plan => new BenchDesk(
-            plan, page?.Inventory ?? LampInventory.Empty, store, services.GetRequiredService<SoakSurroundings>(), page?.StaysOpen ?? false, attended?.ResumeWithin)).ToList());
+            plan, Inventory.Of(plan.Options.Inventory), store, services.GetRequiredService<SoakSurroundings>(), page?.StaysOpen ?? false, attended?.ResumeWithin)).ToList());
         for (var index = 0; index < plans.Count; index++)
         {
             var place = index;

@@ -1,3 +1,4 @@
+using System.Text.Json;
 using Lampwarden.Host.Configuration;
 
 namespace Lampwarden.Host.Tests.Configuration;
@@ -61,6 +62,15 @@ public sealed class ConfigurationFileTests : IDisposable
         {
             Environment.SetEnvironmentVariable("LAMPWARDEN__BENCHES__0__SOAK__PLANNEDHOURS", null);
         }
+    }
+
+    [Fact]
+    public void Load_Inventory_GoesWithEachBenchIntoItsRecord()
+    {
+        var stored = JsonSerializer.Serialize(Load(Good).Benches[0], Lampwarden.Host.Commands.Json.Compact);
+        var read = JsonSerializer.Deserialize<BenchOptions>(stored, Lampwarden.Host.Commands.Json.Compact)!;
+        Assert.Equal(130, Assert.Single(read.Inventory).RatedVolts);
+        Assert.Equal(75, Lampwarden.Host.Soaking.BenchPlan.From(read, Lampwarden.Host.Soaking.Inventory.Of(read.Inventory)).Bank.Lamps[0].RatedWatts);
     }
 
     [Fact]
