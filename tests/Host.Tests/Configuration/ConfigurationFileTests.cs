@@ -91,7 +91,7 @@ public sealed class ConfigurationFileTests : IDisposable
     [Theory]
     [InlineData("\"quantity\": \"mainsVoltage\"", "exactly one meter must measure lineCurrent; 0 do")]
     [InlineData("\"protocol\": { \"kind\": \"lines\", \"pattern\": \"([0-9\" }", "Unterminated [] set")]
-    [InlineData("\"protocol\": { \"query\": \"READ\" }", "a question ends with '?'")]
+    [InlineData("\"protocol\": { \"query\": \"READ\" }", "must be a question, such as READ?")]
     public void Load_RuleAcrossKeys_IsStated(string meterKey, string expected)
     {
         var error = Assert.Throws<ConfigurationException>(() => Load(Good.Replace("\"readingsPerSecond\": 5", meterKey, StringComparison.Ordinal)));
