@@ -62,13 +62,6 @@ internal sealed class Chromium : IAsyncDisposable
         return answer.GetProperty("result").TryGetProperty("value", out var value) ? value : default;
     }
 
-    /// <summary>Presses one key on what has the focus.</summary>
-    public async Task PressAsync(string key)
-    {
-        await SendAsync("Input.dispatchKeyEvent", new { type = "keyDown", key, text = key.Length == 1 ? key : null });
-        await SendAsync("Input.dispatchKeyEvent", new { type = "keyUp", key });
-    }
-
     /// <summary>Bytes of script objects that are really in use.</summary>
     public async Task<double> HeapBytesAsync()
     {

@@ -66,11 +66,10 @@ internal static class PageCommand
 
             Print("72 h at 10 readings/s, from the address to the drawn trace, ms", paints);
             var (fine, first) = (new List<double>(), new List<double>());
-            await chromium.AskAsync("document.querySelector('.plot').focus()");
             for (var zoom = 0; zoom < 18; zoom++)
             {
                 var before = (await chromium.AskAsync("performance.now()")).GetDouble();
-                await chromium.PressAsync("+");
+                await chromium.AskAsync("document.querySelector('.plot').dispatchEvent(new KeyboardEvent('keydown', { key: '+', bubbles: true })), 0");
                 var drawn = await chromium.AskAsync(Drawn(before));
                 first.Add(drawn.GetProperty("first").GetDouble() - before);
                 fine.Add(drawn.GetProperty("at").GetDouble() - before);

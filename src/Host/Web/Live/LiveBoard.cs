@@ -11,7 +11,7 @@ public sealed class LiveBoard : ISoakListener, IAsyncDisposable
     /// <summary>How often what is new is sent, in real time even in a rehearsal.</summary>
     public static readonly TimeSpan Beat = TimeSpan.FromMilliseconds(500);
 
-    // Five minutes of one bench, or half a minute of forty: longer than any browser takes to come back.
+    // Half an hour of one bench, or most of a minute of forty: longer than a browser takes to come back.
     private const int EventsKept = 4096;
 
     private readonly Dictionary<string, LiveBench> _benches;

@@ -31,11 +31,11 @@ export function benchView({ state, name }) {
     describe: (seconds) => plot.say(under(state.benches.get(name)?.trace, seconds)),
   });
   const missing = h("p", { class: "problem", hidden: true }, `There is no bench '${name}'. `, h("a", { href: "#/" }, "See all benches"));
-  const node = h("div", { class: "bench-view" }, missing, hero.node, bringUp.node, alerts.node,
-    h("div", { class: "bench-left" }, board, readouts.node, deeds.node),
-    h("div", { class: "bench-right" },
+  const node = h("div", { class: "bench-view" }, missing, hero.node, bringUp.node,
+    h("div", { class: "bench-right" }, alerts.node,
       h("section", { class: "sheet trace-box", "aria-labelledby": "trace-title" },
-        h("h2", { id: "trace-title" }, "Line current"), h("div", { class: "trace-row" }, plot.node, inrush.node), facts)));
+        h("h2", { id: "trace-title" }, "Line current"), h("div", { class: "trace-row" }, plot.node, inrush.node), facts)),
+    h("div", { class: "bench-left" }, board, readouts.node, deeds.node));
   let picture = null;
   let drawn = "";
   let asked = null;
