@@ -83,6 +83,8 @@ public sealed class PageTests(BrowserFixture browser)
 
         await sight.Expect("#stale").ToBeVisibleAsync();
         await sight.Expect("#stale").ToContainTextAsync("look at the bench itself");
+        await Assertions.Expect(sight.Page.Locator("body")).ToHaveClassAsync("old");
+        Assert.StartsWith("Not live", await sight.Page.TitleAsync(), StringComparison.Ordinal);
         await sight.PictureAsync("host-gone");
     }
 

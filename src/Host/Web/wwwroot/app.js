@@ -54,6 +54,9 @@ const stream = new Stream({
   },
   onStale(seconds) {
     stale.hidden = seconds === null;
+    // Nobody across the room may take what was true a minute ago for what is true now.
+    document.body.classList.toggle("old", seconds !== null);
+    title();
     text(link, seconds === null ? "live" : "not live");
     if (seconds !== null) {
       text(stale, `Nothing heard from the host for ${Math.round(seconds)} s. What is shown below is old: look at the bench itself.`);
@@ -117,7 +120,7 @@ function soon() {
 function title() {
   const bench = view?.standsFor?.();
   const worst = bench && ["critical", "warning", "blind"].includes(standing(bench)) ? `${headline(bench)}: ${bench.bench}, ` : "";
-  const wanted = `${worst}${view?.title ?? ""}, Lampwarden`;
+  const wanted = `${stale.hidden ? worst : "Not live: "}${view?.title ?? ""}, Lampwarden`;
   if (document.title !== wanted) {
     document.title = wanted;
   }
