@@ -28,6 +28,9 @@ internal static class Hypotheses
     private const double LampShareSd = 0.12, LampLeastSd = 0.005;
     private const double DarkLog = -2.3;
 
+    // An unmeasured mains moves for good by a tap or so, seldom by more than 2 %.
+    private const double MainsShiftSd = 0.01;
+
     /// <param name="change">Natural logarithm of new over old current.</param>
     /// <param name="sd">Sd of that.</param>
     /// <param name="expected">What prediction knows of the lamps; may be null.</param>
@@ -54,7 +57,7 @@ internal static class Hypotheses
         Try(Cause.MeterScale, null, Math.Log(0.01) + Math.Max(Near(change, Math.Log(10), 0.02, sd), Near(change, -Math.Log(10), 0.02, sd)));
         if (!mainsMeasured)
         {
-            Try(Cause.MainsMoved, null, Math.Log(0.2) + Near(change, 0, 0.03, sd));
+            Try(Cause.MainsMoved, null, Math.Log(0.1) + Near(change, 0, MainsShiftSd, sd));
         }
 
         var lamps = expected?.Lamps ?? [];
