@@ -72,7 +72,7 @@ function source({ x, y }, mains, upright) {
     s("circle", { r: 19 }),
     s("path", { d: "M-10 0 C-7 -9 -3 -9 0 0 S7 9 10 0" }),
     upright
-      ? s("text", { x: 0, y: -27, "text-anchor": "middle" }, mains)
+      ? s("text", { x: 0, y: 39, "text-anchor": "middle" }, mains)
       : [s("text", { x: 25, y: -1 }, volts ?? ""), s("text", { x: 25, y: 15 }, hertz ?? "")]);
 }
 

@@ -9,6 +9,7 @@ import { Inrush } from "../pieces/inrush.js";
 import { Alerts } from "../pieces/alerts.js";
 import { BringUp } from "../pieces/bring-up.js";
 import { benchPath, get, post, runPath } from "../live/api.js";
+import { layout } from "../model/circuit.js";
 import { fill } from "../model/state.js";
 import { traceRange } from "../model/trace.js";
 import { isNumber } from "../model/numbers.js";
@@ -57,7 +58,9 @@ export function benchView({ state, name }) {
     const key = JSON.stringify([document.bankTree, document.unit, narrow.matches]);
     if (key !== drawn && document.bankTree) {
       drawn = key;
-      picture = new CircuitPicture(document.bankTree, { unit: document.unit, mains: document.mains, label: `Bank ${document.bank} before ${document.unit} at ${document.mains}` });
+      // A long chain would be too small to read across a telephone: it goes down the screen instead.
+      const upright = narrow.matches && layout(document.bankTree).width > 560;
+      picture = new CircuitPicture(document.bankTree, { upright, unit: document.unit, mains: document.mains, label: `Bank ${document.bank} before ${document.unit} at ${document.mains}` });
       board.replaceChildren(picture.node);
     }
 
