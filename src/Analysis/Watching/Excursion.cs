@@ -17,6 +17,7 @@ internal sealed class Excursion
     private bool wasOff;
     private bool firstEdgeIsReturn;
     private int offRun;
+    private double offSeconds;
     private int longestOffRun;
     private int ups;
     private int downs;
@@ -40,6 +41,10 @@ internal sealed class Excursion
     public bool LooksLikeArcs => ups > 0 && downs > 0 && ups + downs >= 3;
 
     public bool IsOff => wasOff;
+
+    /// <summary>Longest stretch without current so far.</summary>
+    public double LongestOffSeconds { get; private set; }
+
     public int Edges => edgeCount;
 
     /// <summary>Mean departure since the current last left the band, relative; the size of a step.</summary>
@@ -65,6 +70,7 @@ internal sealed class Excursion
         Active = true;
         Number = 0;
         HasReturned = false;
+        LongestOffSeconds = offSeconds = 0;
         (OnsetSeconds, CrySeconds, LastOutSeconds, LastInSeconds, previousSeconds) = (onset, seconds, seconds, double.NegativeInfinity, seconds);
         (edgeCount, offRun, longestOffRun, ups, downs, ins, outInARow) = (0, 0, 0, 0, 0, 0, 0);
         meanOut = 0;
@@ -94,6 +100,8 @@ internal sealed class Excursion
             wasOff = off;
         }
 
+        offSeconds = off ? offSeconds + seconds - previousSeconds : 0;
+        LongestOffSeconds = Math.Max(LongestOffSeconds, offSeconds);
         offRun = off ? offRun + 1 : 0;
         longestOffRun = Math.Max(longestOffRun, offRun);
         previousSeconds = seconds;
@@ -200,6 +208,10 @@ internal sealed class Excursion
         state.Field(ref firstEdgeIsReturn);
         state.Field(ref offRun);
         state.Field(ref longestOffRun);
+        state.Field(ref offSeconds);
+        var longestOff = LongestOffSeconds;
+        state.Field(ref longestOff);
+        LongestOffSeconds = longestOff;
         state.Field(ref ups);
         state.Field(ref downs);
         state.Field(ref ins);

@@ -3,8 +3,16 @@ namespace Lampwarden.Analysis.Watching;
 /// <summary>What a sudden change is called, from the first reading on, and what is said about it.</summary>
 public sealed partial class Watch
 {
+    private const double SwitchedOffSeconds = 300;
+
     private Signature Classify()
     {
+        if (excursion.LongestOffSeconds > SwitchedOffSeconds)
+        {
+            // Minutes without current are no hiccup: somebody switched off, or it opened and was mended.
+            return Signature.OpenCircuit;
+        }
+
         if (excursion.LooksCycling)
         {
             return Signature.Cycling;

@@ -151,6 +151,17 @@ public sealed class WatchBehaviourTests
     }
 
     [Fact]
+    public void Observe_SwitchedOffForTenMinutes_IsOpenAndClearsLater()
+    {
+        static double Amps(double t) => t is > 4000 and < 4600 ? 0.0 : 0.5;
+        var watch = Bench(mains: true);
+        watch.Feed(Series.Of(7000, Amps, volts: Volts));
+        var finding = Assert.Single(watch.Findings);
+        Assert.Equal(Signature.OpenCircuit, finding.Signature);
+        Assert.NotNull(finding.ClearedSeconds);
+    }
+
+    [Fact]
     public void Observe_ScaledReadings_GiveTheSameFindings()
     {
         static double Amps(double t) => t < 12000 ? 0.5 : 0.5 * (1 + ((t - 12000) / 3600 * 0.1));
