@@ -47,6 +47,5 @@ switch (args.FirstOrDefault())
         Console.Error.WriteLine("  or: physics; physics-checks");
         Console.Error.WriteLine("  or: page [look-back|memory|forty] (needs Chromium)");
         Console.Error.WriteLine("  or: faults [--only TEXT]; shop [--seconds S [--benches 5,10,20]]; long-haul [--shifts N]");
-        Console.Error.WriteLine("  or: faults [--only TEXT]; shop [--seconds S [--benches 5,10,20]]; long-haul [--shifts N]");
         return 2;
 }

@@ -37,7 +37,7 @@ public sealed class EventsDocumentTests
         var rows = File.ReadAllLines(Path.Combine(folder.FullName, "docs", "events.md")).Where(line => line.StartsWith("| ", StringComparison.Ordinal)).Skip(2).ToHashSet();
         var expected = Events.OrderBy(one => one.EventId).Select(one => string.Create(
             CultureInfo.InvariantCulture,
-            $"| {one.EventId} | {one.EventName} | {((int)one.Level < 0 ? "Varies" : one.Level)} | {one.Message.Replace("|", "\\|", StringComparison.Ordinal)} |")).ToHashSet();
+            $"| {one.EventId} | {one.EventName} | {((int)one.Level is < 0 or (int)LogLevel.None ? "Varies" : one.Level)} | {one.Message.Replace("|", "\\|", StringComparison.Ordinal)} |")).ToHashSet();
         Assert.Empty(expected.Except(rows));
         Assert.Empty(rows.Except(expected));
     }

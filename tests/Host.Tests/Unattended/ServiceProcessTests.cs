@@ -73,10 +73,11 @@ public sealed class ServiceProcessTests : IDisposable
             await using var service = await ServiceProcess.StartAsync(_folder, rig);
             await ServiceProcess.AskedAsync(rig, asked + 10);
             await service.SignalAsync("TERM");
+            Assert.Equal(130, service.ExitCode);
         }
 
         using var store = SoakStore.Open(_folder.Path, TimeProvider.System, StoreMode.Review);
-        Assert.All(store.Runs(), run => Assert.Null(run.ResumedFrom));
+        Assert.Equal(2, store.Runs().Select(run => run.StartedUtc).Distinct().Count());
     }
 
     [Fact]
