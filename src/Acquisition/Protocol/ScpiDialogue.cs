@@ -69,6 +69,7 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
         var answer = await NextAsync(timer, cancellationToken);
         if (answer is null || sending.IsFaulted)
         {
+            answer?.Refuse(GapReason.StaleAnswer); // something came before the question was out
             await SentAsync(sending, cancellationToken);
         }
 
