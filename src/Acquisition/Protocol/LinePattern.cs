@@ -14,7 +14,7 @@ internal sealed class LinePattern : IValueReader
     private const int LongestLine = 256;
     private const int MostRemembered = 256;
     // A pattern that backtracks without end must not hold the meter up: such a line is refused and told.
-    private static readonly TimeSpan LongestMatch = TimeSpan.FromMilliseconds(100);
+    private static readonly TimeSpan LongestMatch = TimeSpan.FromSeconds(1);
     private static readonly ConcurrentDictionary<string, Regex> Compiled = new(StringComparer.Ordinal);
     private readonly ProtocolOptions _options;
     private readonly Quantity _quantity;
@@ -114,7 +114,7 @@ internal sealed class LinePattern : IValueReader
         }
         catch (RegexMatchTimeoutException)
         {
-            return Refuse(line, "took the pattern over 0.1 s: it backtracks without end, write it more strictly");
+            return Refuse(line, "took the pattern over 1 s: it backtracks without end, write it more strictly");
         }
     }
 

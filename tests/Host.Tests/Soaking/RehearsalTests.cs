@@ -22,7 +22,8 @@ public sealed class RehearsalTests
         Assert.Equal(0, said.Code);
         var document = said.Json;
         Assert.Equal("failed", document.GetProperty("verdict").GetString());
-        var warning = document.GetProperty("findings").EnumerateArray().First(finding => finding.GetProperty("severity").GetString() == "critical");
+        // On a busy machine the meter may fall silent for moments: that is told too, and is none of the unit's business.
+        var warning = document.GetProperty("findings").EnumerateArray().First(finding => finding.GetProperty("signature").GetString() is "developing-short" or "hard-short" or "runaway");
         // The fault begins 328 s after switch-on; the bank would be fully lit some five minutes later.
         Assert.InRange(warning.GetProperty("raisedSeconds").GetDouble(), 320, 420);
         Assert.Contains("The alert is stored and told", said.Error, StringComparison.Ordinal);

@@ -65,7 +65,7 @@ internal sealed class RawHttpServer : IAsyncDisposable
                 talks.Add(TalkAsync(await _listener.AcceptTcpClientAsync(_stop.Token)));
             }
         }
-        catch (Exception error) when (error is OperationCanceledException or SocketException)
+        catch (Exception error) when (error is OperationCanceledException or SocketException or InvalidOperationException or ObjectDisposedException)
         {
             await Task.WhenAll(talks);
         }
