@@ -41,7 +41,8 @@ public sealed class PageServer : IAsyncDisposable
         builder.Services.AddProblemDetails();
         builder.Services.ConfigureHttpJsonOptions(options => CopyTo(options.SerializerOptions));
         builder.Services.AddOpenApi(OpenApiText.Configure);
-        builder.Services.AddSingleton(parts.Board).AddSingleton(parts.Store).AddSingleton(inventory).AddSingleton(new Desks(parts.Desks));
+        builder.Services.AddSingleton(parts.Board).AddSingleton(parts.Store).AddSingleton(inventory).AddSingleton(new Desks(parts.Desks))
+            .AddSingleton(new Watcher(parts.Attendance?.Dispatch));
         builder.Services.AddSingleton(new AccessRules(address, new WrongTokens(time ?? TimeProvider.System), time ?? TimeProvider.System));
         builder.Services.Configure<HostOptions>(options => options.ShutdownTimeout = TimeSpan.FromSeconds(5));
         var application = builder.Build();
@@ -80,6 +81,7 @@ public sealed class PageServer : IAsyncDisposable
         RunEndpoints.Map(api);
         TakeAwayEndpoints.Map(api);
         MeterEndpoints.Map(api);
+        WatcherEndpoints.Map(api);
         EventEndpoint.Map(api);
         SessionEndpoint.Map(api);
     }

@@ -104,7 +104,7 @@ public sealed class ApiTests
             "/api/benches/{bench}/announcements", "/api/benches/{bench}/notes", "/api/benches/{bench}/bring-up/next", "/api/benches/{bench}/bring-up/leave",
             "/api/benches/{bench}/alerts/{number}/acknowledge", "/api/benches/{bench}/alerts/{number}/shelve", "/api/benches/{bench}/alerts/{number}/unshelve",
             "/api/benches/{bench}/alerts/{number}/reset", "/api/predict", "/api/choose", "/api/bring-up", "/api/runs", "/api/runs/{run}", "/api/runs/{run}/series", "/api/runs/{run}/export", "/api/runs/{run}/report",
-            "/api/meters", "/api/events", "/api/session",
+            "/api/meters", "/api/watcher/alerts", "/api/watcher/alerts/{number}/acknowledge", "/api/events", "/api/session",
         ];
         Assert.Superset(new HashSet<string>(expected), Names(document.GetProperty("paths")));
         var steady = document.GetProperty("components").GetProperty("schemas").GetProperty("SteadyState").GetProperty("properties");

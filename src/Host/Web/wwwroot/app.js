@@ -2,6 +2,7 @@
 
 import { attribute, h, text } from "./pieces/dom.js";
 import { headline } from "./pieces/hero.js";
+import { watchTheWatcher } from "./pieces/watcher.js";
 import { onLocked, get } from "./live/api.js";
 import { Stream } from "./live/stream.js";
 import { empty, take } from "./model/state.js";
@@ -134,6 +135,7 @@ addEventListener("hashchange", () => {
 
 main.replaceChildren(h("p", {}, "Asking the host…"));
 stream.follow(null);
+watchTheWatcher(document.getElementById("watcher"));
 if (["#/choose", "#/runs", "#/meters"].some((route) => location.hash.startsWith(route)) || location.hash.startsWith("#/run/")) {
   show();
 }
