@@ -45,6 +45,8 @@ public sealed class AccessibilityTests(BrowserFixture browser)
 
     private static async Task<IEnumerable<string>> FaultsAsync(Sight sight, string view)
     {
+        // A host starved by other work is silent, and the page then greys itself: wait until it is live again.
+        await Assertions.Expect(sight.Page.Locator("body")).Not.ToHaveClassAsync("old");
         var found = await sight.Page.EvaluateAsync<JsonElement>("""
             async () => (await axe.run(document, { resultTypes: ["violations"] })).violations
               .filter((fault) => ["serious", "critical"].includes(fault.impact))

@@ -76,6 +76,7 @@ public sealed class SoakFlowTests(BrowserFixture browser)
         await using var live = await LivePage.OpenAsync(speed: 10);
         await using var sight = await browser.LookAsync(live.Url, Screen.Laptop);
         var page = sight.Page;
+        await sight.Expect(".hero-word").ToHaveTextAsync("Not soaking");
         await sight.GoAsync("#/start");
         await page.GetByLabel("Unit", new() { Exact = false }).First.FillAsync("resistor 450 ohm");
         await Assertions.Expect(page.GetByLabel("Bring it up lamp by lamp")).ToBeEnabledAsync();

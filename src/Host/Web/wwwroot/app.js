@@ -24,6 +24,7 @@ let view = null;
 let locked = false;
 let asked = false;
 let routed = null;
+let drawnFor = null;
 
 const ROUTES = {
   "": () => (state.benches.size === 1 ? benchView({ state, name: [...state.benches.keys()][0] }) : tilesView({ state })),
@@ -75,6 +76,7 @@ function go(address) {
 function show() {
   const [, route = "", ...words] = location.hash.split("/").map(decodeURIComponent);
   routed = locked ? null : route;
+  drawnFor = location.hash;
   view?.close();
   view = locked ? tokenView({ entered }) : (ROUTES[route] ?? ROUTES[""])(...words);
   main.replaceChildren(view.node);
@@ -128,6 +130,11 @@ function title() {
 }
 
 addEventListener("hashchange", () => {
+  // The first drawing may have come before the event that asks for it: what somebody typed by then must stay.
+  if (location.hash === drawnFor && view !== null) {
+    return;
+  }
+
   show();
   main.focus({ preventScroll: true });
   scrollTo(0, 0);

@@ -15,6 +15,7 @@ export class Stream {
   #lastId = null;
   #heard = performance.now();
   #stale = false;
+  #late = 0;
 
   constructor({ onEvent, onStale, onRefused }) {
     Object.assign(this, { onEvent, onStale, onRefused });
@@ -82,9 +83,18 @@ export class Stream {
   #check() {
     const silent = (performance.now() - this.#heard) / 1000;
     if (silent > STALE_SECONDS) {
-      this.#stale = true;
-      this.onStale(silent);
-    } else if (this.#stale) {
+      // A page that was held up itself finds the host's words waiting: only the second look in a row counts.
+      this.#late++;
+      if (this.#late > 1) {
+        this.#stale = true;
+        this.onStale(silent);
+      }
+
+      return;
+    }
+
+    this.#late = 0;
+    if (this.#stale) {
       this.#stale = false;
       this.onStale(null);
     }
