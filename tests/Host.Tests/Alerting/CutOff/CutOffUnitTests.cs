@@ -30,7 +30,7 @@ public sealed class CutOffUnitTests : IAsyncDisposable
     }
 
     private static CutOffOutputOptions Wire(string? keepAlive = null) =>
-        new() { Bench = "bay-3", OpenText = "OPEN\\n", KeepAliveText = keepAlive, KeepAliveSeconds = 1, LapseSeconds = 5 };
+        new() { Bench = "bay-3", OpenText = "OPEN\\n", KeepAliveText = keepAlive, KeepAliveSeconds = 1, LapseSeconds = 60 };
 
     private CutOffUnit Make(CutOffOptions? options = null, CutOffOutputOptions? wire = null) => new(
         options ?? Options(), wire ?? Wire(), _contactor, new CutOffFile(_folder.FullName, "bay-3"),
@@ -203,8 +203,8 @@ public sealed class CutOffUnitTests : IAsyncDisposable
     }
 
     [Theory]
-    [InlineData(3, CutOffPosition.Armed)]
-    [InlineData(6, CutOffPosition.Lapsed)]
+    [InlineData(50, CutOffPosition.Armed)]
+    [InlineData(61, CutOffPosition.Lapsed)]
     [InlineData(-60, CutOffPosition.Lapsed)]
     public async Task KeepAlive_ARestart_GoesOnOnlyWhereTheContactorCannotHaveOpened(double downSeconds, CutOffPosition after)
     {
