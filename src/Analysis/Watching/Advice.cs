@@ -14,7 +14,7 @@ internal static class Advice
         List<string> notes = [];
         if (!settings.MainsMeasured)
         {
-            notes.Add("The mains is not measured: a creep is found 2 to 4 times later than with a mains reading, one of 1 % an hour hardly at all, and a step under 20 % only after a minute and a half.");
+            notes.Add("The mains is not measured: a creep is found 3 to 5 times later than with a mains reading, one of half a per cent an hour often not within a shift, a step under 20 % only after a minute and a half, and one under 2 % never.");
         }
 
         if (settings.Expectation is null)

@@ -9,7 +9,7 @@ public sealed record WatchSettings
     /// <summary>Nominal mains in volts; 50 to 500. Scales measured mains voltage, nothing else.</summary>
     public double NominalMainsVolts { get; init; } = 120;
 
-    /// <summary>Whether observations carry the mains voltage. Without it creep is found 2 to 4 times later.</summary>
+    /// <summary>Whether observations carry the mains voltage. Without it creep is found 3 to 5 times later.</summary>
     public bool MainsMeasured { get; init; }
 
     /// <summary>Length of the soak in hours; null where none was planned (the judgement then asks for no length).</summary>

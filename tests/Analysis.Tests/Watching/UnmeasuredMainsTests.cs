@@ -10,7 +10,7 @@ public sealed class UnmeasuredMainsTests
 
     [Fact]
     public void Notes_MainsNotMeasured_SayWhatThatCosts() =>
-        Assert.Contains(Bench().Notes, note => note.Contains("2 to 4 times later", StringComparison.Ordinal));
+        Assert.Contains(Bench().Notes, note => note.Contains("3 to 5 times later", StringComparison.Ordinal));
 
     [Fact]
     public void Observe_DipThatComesBack_IsAMainsNotice()
