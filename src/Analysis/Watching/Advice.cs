@@ -88,16 +88,20 @@ internal static class Advice
         $"The current jumps to and fro (last {Amps(amps)}): a loose or arcing contact; switch off and look at plugs, switch, fuse holder and lamp sockets for scorching.");
 
     public static string Developing(double percent, double percentPerHour, double amps) => Invariant(
-        $"The current has risen {percent:0.#} % above what this unit should draw, to {Amps(amps)}{(double.IsNaN(percentPerHour) ? "" : Invariant($", and climbs {percentPerHour:0.#} % an hour"))}: a short is likely developing; look for a part that runs hot, and be ready to switch off.");
+        $"The current has risen {percent:0.#} % above what this unit should draw, to {Amps(amps)}{(double.IsNaN(percentPerHour) ? "" : $", and climbs {Pace(percentPerHour)}")}: a short is likely developing; look for a part that runs hot, and be ready to switch off.");
+
+    private static string Pace(double percentPerHour) => percentPerHour > 120
+        ? Invariant($"{percentPerHour / 60:0.#} % a minute")
+        : Invariant($"{percentPerHour:0.#} % an hour");
 
     /// <summary>A slow rise with its forecast.</summary>
     public static string Rising(Signature signature, double percent, double percentPerHour, double amps, double warningAmps, Forecast forecast)
     {
         var pace = signature switch
         {
-            Signature.Runaway => Invariant($"and rises ever faster, now {percentPerHour:0.#} % an hour: something heats itself"),
+            Signature.Runaway => Invariant($"and rises ever faster, now {Pace(percentPerHour)}: something heats itself"),
             Signature.HardShort => "as if in one step: a part may have shorted in part",
-            _ => Invariant($"and climbs {percentPerHour:0.#} % an hour: a short is likely developing"),
+            _ => Invariant($"and climbs {Pace(percentPerHour)}: a short is likely developing"),
         };
         var when = double.IsFinite(forecast.HighSeconds) && forecast.HighSeconds > 0 && signature != Signature.HardShort
             ? Invariant($"; it will reach {Amps(warningAmps)} in about {Span(forecast.MiddleSeconds)} ({Span(forecast.LowSeconds)} to {Span(forecast.HighSeconds)})")

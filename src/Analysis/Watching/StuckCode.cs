@@ -12,6 +12,9 @@ internal sealed class StuckCode(double readingsPerSecond)
 {
     private const double FalseVerdictHours = 1000;
     private const double LeastSeconds = 10;
+
+    // A learned noise is never sure enough to convict on a handful of codes, however slowly they come.
+    private const int LeastRepeats = 12;
     private const double LeastNoiseInCounts = 0.22;
     private const double MovedCounts = 4;
     private const double Safety = 1.5;
@@ -47,7 +50,7 @@ internal sealed class StuckCode(double readingsPerSecond)
         repeats++;
         changes = 0;
         (leastDue, mostDue) = (Math.Min(leastDue, foretold), Math.Max(mostDue, foretold));
-        if (seconds - since < LeastSeconds || !double.IsFinite(noise.CountAmps) || amps <= 0)
+        if (seconds - since < LeastSeconds || repeats < LeastRepeats || !double.IsFinite(noise.CountAmps) || amps <= 0)
         {
             return false;
         }

@@ -80,11 +80,14 @@ public sealed partial class Watch
             Signature.HardShort => Advice.StepUp(percent, o.LineAmps),
             Signature.OpenCircuit => Advice.Open(o.LineAmps),
             Signature.LampOut => Advice.StepDown(-percent, o.LineAmps),
-            Signature.DevelopingShort => Advice.Developing(percent, excursion.ClimbPerSecond * 3600 * 100, o.LineAmps),
+            Signature.DevelopingShort => Advice.Developing(WholeRise() * 100, excursion.ClimbPerSecond * 3600 * 100, o.LineAmps),
             Signature.Cycling => Advice.Cycling(excursion.Cycle.PeriodSeconds),
             _ => Advice.Intermittent(o.LineAmps),
         };
     }
+
+    /// <summary>A climb shifts the model bit by bit; what counts for a reader is the whole rise since the unit was healthy.</summary>
+    private double WholeRise() => Math.Exp(stepOffset) * (1 + (excursion.Step == 0 ? sudden.Jump : excursion.Step)) - 1;
 
     private Dictionary<string, double> Evidence(in Observation o)
     {
@@ -94,6 +97,11 @@ public sealed partial class Watch
             ["expectedAmps"] = Math.Exp(slow.Foretell(o.Seconds, mains.Now)),
             ["changePercent"] = (excursion.Step == 0 ? sudden.Jump : excursion.Step) * 100,
         };
+        if (excursion.Number > 0 && book[excursion.Number].Signature == Signature.DevelopingShort)
+        {
+            evidence["excessPercent"] = WholeRise() * 100;
+        }
+
         if (excursion.Edges >= 2)
         {
             (evidence["periodSeconds"], evidence["dutyShare"]) = excursion.Cycle;

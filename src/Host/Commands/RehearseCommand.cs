@@ -64,6 +64,11 @@ internal sealed class RehearseCommand : CliCommand
         };
         var plan = BenchPlan.From(options, Inventory.Of([]));
         prose.WriteLine($"{plan.Unit.Text} behind {plan.Bank.Text} at {plan.Mains}. {plan.Outlook}");
+        foreach (var note in plan.WatchNotes)
+        {
+            prose.WriteLine(note);
+        }
+
         prose.WriteLine(string.Create(CultureInfo.InvariantCulture, $"Time runs {speed:0.#} times faster than life; times below are the bench's own."));
         prose.WriteLine();
 

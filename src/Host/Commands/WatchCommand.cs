@@ -45,6 +45,10 @@ internal sealed class WatchCommand : CliCommand
         foreach (var plan in plans)
         {
             terminal.Prose.WriteLine($"{plan.Name}: {plan.Unit.Text} behind {plan.Bank.Text} at {plan.Mains}. {plan.Outlook}");
+            foreach (var note in plan.WatchNotes)
+            {
+                terminal.Prose.WriteLine("  " + note);
+            }
         }
 
         terminal.Prose.WriteLine(CommandLine.Cautions);

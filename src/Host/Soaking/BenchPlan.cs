@@ -55,6 +55,9 @@ public sealed class BenchPlan
             $"Expected: {Narration.Amps(Prediction.Steady.LineAmps)} once settled ({Narration.Amps(Prediction.Band.LowAmps)} to {Narration.Amps(Prediction.Band.HighAmps)}), {Narration.Amps(Prediction.Shorted.LineAmps)} with the unit shorted.")
         : $"This bank cannot carry this unit: {Prediction.Steady.Note}";
 
+    /// <summary>What the watch will not see well on this bench, and what that costs; empty where there is nothing to say.</summary>
+    public IReadOnlyList<string> WatchNotes => new Watch(WatchSettings).Notes;
+
     /// <summary>Makes a bench ready.</summary>
     /// <param name="options">A bench that has passed the rules.</param>
     /// <param name="inventory">The lamps its bank text may name.</param>

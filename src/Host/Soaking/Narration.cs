@@ -26,7 +26,7 @@ public static class Narration
         var what = change.Kind switch
         {
             ChangeKind.Raised => finding.Severity.Text().ToUpperInvariant(),
-            ChangeKind.Amended => "amended",
+            ChangeKind.Amended => $"now {finding.Severity.Text()}",
             _ => "cleared",
         };
         return $"{Time(seconds)}: {what}: {finding.Signature.Text()} (since {Time(finding.OnsetSeconds)}). {finding.Explanation}";

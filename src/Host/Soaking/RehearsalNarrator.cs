@@ -7,6 +7,8 @@ namespace Lampwarden.Host.Soaking;
 public sealed class RehearsalNarrator(TextWriter prose, BenchPlan plan) : ISoakListener
 {
     private const double QuietEverySeconds = 300;
+    private const double AmendedEverySeconds = 60;
+    private readonly Dictionary<int, (Signature Signature, Severity Severity, double Seconds)> _told = [];
     private bool _waiting;
     private long _looks;
     private double _settledAt = double.NaN;
@@ -34,7 +36,7 @@ public sealed class RehearsalNarrator(TextWriter prose, BenchPlan plan) : ISoakL
             case Observed observed:
                 Follow(observed);
                 break;
-            case FindingChanged changed:
+            case FindingChanged changed when IsNews(changed):
                 Say(Narration.Line(changed.Seconds, changed.Change));
                 break;
             case AlertChanged alert when alert.Change.What == "raised" && double.IsNaN(AmpsAtFirstAlert):
@@ -51,6 +53,22 @@ public sealed class RehearsalNarrator(TextWriter prose, BenchPlan plan) : ISoakL
 
                 break;
         }
+    }
+
+    /// <summary>A finding is amended with every turn of the evidence; the reader wants a new name, a new severity, or a minute's news.</summary>
+    private bool IsNews(FindingChanged changed)
+    {
+        var finding = changed.Change.Finding;
+        if (changed.Change.Kind == ChangeKind.Amended
+            && _told.TryGetValue(finding.Number, out var told)
+            && (told.Signature, told.Severity) == (finding.Signature, finding.Severity)
+            && changed.Seconds - told.Seconds < AmendedEverySeconds)
+        {
+            return false;
+        }
+
+        _told[finding.Number] = (finding.Signature, finding.Severity, changed.Seconds);
+        return true;
     }
 
     private void Follow(Observed observed)
