@@ -17,7 +17,7 @@ internal static partial class Log
     [LoggerMessage(EventId = 103, EventName = "WaitingForSwitchOn", Level = LogLevel.Information, Message = "{Bench}: waiting for switch-on, at most {Seconds:F0} s")]
     public static partial void WaitingForSwitchOn(ILogger logger, string bench, double seconds);
 
-    [LoggerMessage(EventId = 104, EventName = "NoteNotStored", Level = LogLevel.Warning, Message = "{Bench}: a note of the bring-up could not be stored")]
+    [LoggerMessage(EventId = 104, EventName = "NoteNotStored", Level = LogLevel.Warning, Message = "{Bench}: a note of the run could not be stored")]
     public static partial void NoteNotStored(ILogger logger, Exception error, string bench);
 
     [LoggerMessage(EventId = 105, EventName = "SoakAsked", Level = LogLevel.Information, Message = "{Bench}: a soak was started from the page: {Unit} behind {Bank}")]

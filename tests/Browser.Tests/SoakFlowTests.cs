@@ -38,6 +38,13 @@ public sealed class SoakFlowTests(BrowserFixture browser)
         await Assertions.Expect(page.Locator(".hero")).ToHaveAttributeAsync("data-standing", "settling");
         await page.WaitForFunctionAsync("() => document.querySelector('.hero-time dd').textContent > '0:00:20'");
 
+        // What somebody did is told in one press, and stands in the record later.
+        await page.GetByLabel("What you did, in your own words").FillAsync("The fan is on now");
+        await page.GetByRole(AriaRole.Button, new() { Name = "The unit switches by itself" }).FocusAsync();
+        await page.Keyboard.PressAsync("Enter");
+        await sight.Expect(".tell [role=status]").ToContainTextAsync("counts as healthy");
+        await sight.PictureAsync("told", whole: true);
+
         // A dead short: seen across the room, and acknowledged.
         live.Bench.Amps = live.Plan.Prediction.Shorted.LineAmps;
         await Assertions.Expect(page.Locator(".hero")).ToHaveAttributeAsync("data-standing", "critical");
@@ -66,6 +73,7 @@ public sealed class SoakFlowTests(BrowserFixture browser)
         await page.GetByRole(AriaRole.Button, new() { Name = "Show 1 s", Exact = true }).ClickAsync();
         await sight.Expect(".zoom-keys [role=status]").ToContainTextAsync("1 s");
         await Assertions.Expect(page.GetByText("The rectifier is hot")).ToBeVisibleAsync();
+        await Assertions.Expect(page.GetByText("The fan is on now")).ToBeVisibleAsync();
         var download = await page.RunAndWaitForDownloadAsync(() => page.GetByRole(AriaRole.Link, new() { Name = "CSV" }).ClickAsync());
         Assert.StartsWith("seconds,amps", await File.ReadAllTextAsync(await download.PathAsync(), TestContext.Current.CancellationToken), StringComparison.Ordinal);
     }

@@ -116,18 +116,31 @@ public sealed class Soak
     public Task<AlertChange?> AcknowledgeAsync(int alertNumber, string? by = null) =>
         DecideAsync((book, seconds) => book.Acknowledge(alertNumber, seconds, by));
 
-    /// <summary>Somebody changed something on the bench. Safe from any thread; carried out by the soak's loop.</summary>
+    /// <summary>
+    /// Somebody changed something on the bench: the watch is told, and a note of the run says so. Safe from any thread;
+    /// carried out by the soak's loop, which does not wait for the note.
+    /// </summary>
     /// <returns>False where no run is under way.</returns>
-    public Task<bool> AnnounceAsync(Announcement what) => AskAsync(soak =>
+    public async Task<bool> AnnounceAsync(Announcement what)
     {
-        if (soak._recorder is null)
+        var noted = await AskAsync(soak =>
+        {
+            if (soak._recorder is null)
+            {
+                return null;
+            }
+
+            soak.Publish(soak._ledger.Watch.Announce(soak._ledger.LastSeconds, what));
+            return soak.NoteAsync(AnnouncementWords.Note(what), soak._ledger.LastSeconds);
+        });
+        if (noted is null)
         {
             return false;
         }
 
-        soak.Publish(soak._ledger.Watch.Announce(soak._ledger.LastSeconds, what));
+        await noted;
         return true;
-    });
+    }
 
     /// <summary>The next lamp of the bring-up is in, whatever the current says; or the bring-up is left as it is.</summary>
     /// <returns>False where there is no such step.</returns>

@@ -35,7 +35,7 @@ public sealed class BenchDeskTests
         var ended = await UntilAsync(client, bench => bench.GetProperty("phase").GetString() == "ended" && bench.GetProperty("canStart").GetBoolean());
         var record = await client.GetFromJsonAsync<JsonElement>(new Uri($"/api/runs/{Text(ended, "run")}", UriKind.Relative), Cancellation);
         Assert.Equal("incomplete", Text(record, "verdict"));
-        Assert.Equal("C3 feels warm", Text(record.GetProperty("notes")[0], "text"));
+        Assert.Equal(["Told the watch: the load was changed.", "C3 feels warm"], record.GetProperty("notes").EnumerateArray().Select(note => Text(note, "text")));
 
         Assert.Equal(HttpStatusCode.Accepted, await PostAsync(client, "soak", new { unit = "resistor 300 ohm", bank = "60 W 120 V", plannedHours = 1 }));
         var again = await UntilAsync(client, bench => bench.GetProperty("run").ValueKind == JsonValueKind.String && Text(bench, "run") != Text(ended, "run"));

@@ -9,8 +9,8 @@ namespace Lampwarden.Host.Web.Api;
 
 /// <summary>Something a person tells the watch.</summary>
 /// <param name="Kind">load-changed, lamp-switched, cycles-by-itself or meter-changed.</param>
-/// <param name="Detail">In the person's words.</param>
-public sealed record AnnounceRequest(AnnouncementKind Kind, string? Detail = null);
+/// <param name="Detail">In the person's words, at most 500 characters; kept with the run.</param>
+public sealed record AnnounceRequest(string? Kind, string? Detail = null);
 
 /// <summary>Something a person writes about a run.</summary>
 /// <param name="Text">1 to 2000 characters.</param>
@@ -21,6 +21,7 @@ public sealed record NoteRequest(string Text, string? Author = null);
 internal static class BenchEndpoints
 {
     private const int LongestNote = 2000;
+    private const int LongestDetail = 500;
 
     public static void Map(IEndpointRouteBuilder api)
     {
@@ -75,7 +76,19 @@ internal static class BenchEndpoints
             return Desks.Missing(bench);
         }
 
-        var announcement = new Announcement(request.Kind, request.Detail);
+        // A missing kind must not pass for the first of the kinds: that would make the watch forget its level.
+        if (AnnouncementWords.KindOf(request.Kind) is not { } kind)
+        {
+            return Problems.Bad($"kind is '{request.Kind}'; expected one of {AnnouncementWords.Names}.");
+        }
+
+        var detail = request.Detail?.Trim() ?? "";
+        if (detail.Length > LongestDetail)
+        {
+            return Problems.Bad($"detail has {detail.Length} characters; expected at most {LongestDetail}.");
+        }
+
+        var announcement = new Announcement(kind, detail.Length == 0 ? null : detail);
         return desk.Soak is { } soak && await soak.AnnounceAsync(announcement) ? TypedResults.NoContent() : NoRun(bench);
     }
 

@@ -8,6 +8,7 @@ import { Plot, reading } from "../pieces/plot.js";
 import { Inrush } from "../pieces/inrush.js";
 import { Alerts } from "../pieces/alerts.js";
 import { BringUp } from "../pieces/bring-up.js";
+import { Tell } from "../pieces/tell.js";
 import { benchPath, get, post, runPath } from "../live/api.js";
 import { layout } from "../model/circuit.js";
 import { fill } from "../model/state.js";
@@ -128,38 +129,30 @@ function under(trace, seconds) {
   return reading(trace.seconds[index], trace.low[index], trace.high[index]);
 }
 
-/** What a person tells the watch, and how a soak is ended. */
+/** What a person tells the watch and the record, and how a soak is ended. */
 class Deeds {
   constructor(name) {
     this.name = name;
     this.place = h("div", {});
     this.end = h("button", { onclick: () => this.#end() }, "End this soak");
-    this.load = h("button", { onclick: () => act(this.load, this.place, () => this.#tell("load-changed")) }, "I changed the load");
-    this.cycles = h("button", { onclick: () => act(this.cycles, this.place, () => this.#tell("cycles-by-itself")) }, "It switches by itself");
+    this.tell = new Tell(name);
     this.start = h("a", { class: "button", href: `#/start/${encodeURIComponent(name)}` }, "Start a soak here");
     this.report = h("a", { class: "button" }, "Look back at this run");
     this.text = h("input", { "aria-label": "Note for the run", maxlength: "500", placeholder: "A note for the record" });
     this.keep = h("button", {}, "Keep note");
     this.form = h("form", { class: "row note-form", onsubmit: (event) => this.#note(event) }, this.text, this.keep);
     this.node = h("section", { class: "sheet deeds", "aria-label": "What you can do" },
-      h("div", { class: "row" }, this.start, this.load, this.cycles, this.end, this.report), this.form, this.place);
+      h("div", { class: "row" }, this.start, this.end, this.report), this.tell.node, this.form, this.place);
   }
 
   update(document) {
     const runs = document.run !== null && !["ended", "idle"].includes(document.phase);
     this.start.hidden = !document.canStart;
     this.end.hidden = !(runs || document.phase === "waiting") || !document.canEnd;
-    this.load.hidden = this.cycles.hidden = !runs;
+    this.tell.node.hidden = !runs;
     this.form.hidden = !document.run;
     this.report.hidden = !document.run;
     this.report.href = `#/run/${encodeURIComponent(document.run ?? "")}`;
-  }
-
-  async #tell(kind) {
-    await post(benchPath(this.name, "/announcements"), { kind });
-    this.place.replaceChildren(h("p", { role: "status" }, kind === "load-changed"
-      ? "The watch learns the new level; until then only the absolute limits and sudden faults speak."
-      : "The watch takes its own switching as healthy from now on."));
   }
 
   async #end() {
