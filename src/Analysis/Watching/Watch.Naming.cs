@@ -80,14 +80,14 @@ public sealed partial class Watch
             Signature.HardShort => Advice.StepUp(percent, o.LineAmps),
             Signature.OpenCircuit => Advice.Open(o.LineAmps),
             Signature.LampOut => Advice.StepDown(-percent, o.LineAmps),
-            Signature.DevelopingShort => Advice.Developing(WholeRise() * 100, excursion.ClimbPerSecond * 3600 * 100, o.LineAmps),
+            Signature.DevelopingShort => Advice.Developing(WholeRise(o.LineAmps) * 100, excursion.ClimbPerSecond * 3600 * 100, o.LineAmps),
             Signature.Cycling => Advice.Cycling(excursion.Cycle.PeriodSeconds),
             _ => Advice.Intermittent(o.LineAmps),
         };
     }
 
     /// <summary>A climb shifts the model bit by bit; what counts for a reader is the whole rise since the unit was healthy.</summary>
-    private double WholeRise() => Math.Exp(stepOffset) * (1 + (excursion.Step == 0 ? sudden.Jump : excursion.Step)) - 1;
+    private double WholeRise(double amps) => amps / climbFromAmps - 1;
 
     private Dictionary<string, double> Evidence(in Observation o)
     {
@@ -99,7 +99,7 @@ public sealed partial class Watch
         };
         if (excursion.Number > 0 && book[excursion.Number].Signature == Signature.DevelopingShort)
         {
-            evidence["excessPercent"] = WholeRise() * 100;
+            evidence["excessPercent"] = WholeRise(o.LineAmps) * 100;
         }
 
         if (excursion.Edges >= 2)

@@ -8,7 +8,7 @@ public sealed partial class Watch
     // Without a prediction: what calls for a look and what calls for the switch, as excess over the healthy current.
     private const double WarningExcess = 0.10, StopExcess = 0.25;
     private const double UrgentExcess = 0.08, UrgentSeconds = 3600;
-    private const double AmendEverySeconds = 900, AmendGrowth = 1.5;
+    private const double AmendEverySeconds = 900, AmendGrowth = 1.5, ClimbToldSeconds = 60;
 
     // A growing fault and a straight one look much alike when first seen: the likelihoods differ by less than one. The cut is where on the
     // tuning corpora the two kinds of mistake cost the same.
@@ -18,6 +18,7 @@ public sealed partial class Watch
     private int riseFinding;
     private int fallFinding;
     private double goneSince = double.NaN;
+    private double climbFromAmps = double.NaN;
     private double amendedSeconds;
     private double amendedExcess;
 
@@ -86,6 +87,23 @@ public sealed partial class Watch
         {
             ClearIfGone(best, o, ref riseFinding);
         }
+        else if (climbFromAmps > 0 && o.Seconds - amendedSeconds > ClimbToldSeconds)
+        {
+            AmendClimbed(o);
+        }
+    }
+
+    /// <summary>A climb that the model was shifted to follow goes on being told by where the line stands now.</summary>
+    private void AmendClimbed(in Observation o)
+    {
+        amendedSeconds = o.Seconds;
+        var percent = WholeRise(o.LineAmps) * 100;
+        var amps = o.LineAmps;
+        book.Amend(riseFinding, old => old with
+        {
+            Explanation = Advice.Developing(percent, double.NaN, amps),
+            Evidence = new Dictionary<string, double>(old.Evidence) { ["lineAmps"] = amps, ["excessPercent"] = percent },
+        });
     }
 
     private void ClearIfGone(in SlowCry best, in Observation o, ref int number)
@@ -193,6 +211,7 @@ public sealed partial class Watch
         state.Field(ref fallFinding);
         state.Field(ref goneSince);
         state.Field(ref amendedSeconds);
+        state.Field(ref climbFromAmps);
         state.Field(ref amendedExcess);
     }
 }

@@ -217,6 +217,11 @@ public sealed partial class Watch
     /// <summary>No step but a climb too fast for blocks: it joins or becomes the standing rise, and the trend is told so as not to cry again.</summary>
     private void ConfirmClimb(in Observation o)
     {
+        if (stepOffset == 0 || !book.Stands(riseFinding))
+        {
+            climbFromAmps = Math.Exp(slow.Foretell(o.Seconds, mains.Filtered));
+        }
+
         if (excursion.Number == 0 && !book.Stands(riseFinding))
         {
             RaiseExcursion(o, Signature.DevelopingShort);
@@ -227,6 +232,7 @@ public sealed partial class Watch
         }
 
         riseFinding = excursion.Number > 0 ? excursion.Number : riseFinding;
+        amendedSeconds = o.Seconds;
 
         var (latest, slope, by) = (excursion.Latest, excursion.ClimbPerSecond, Math.Log(1 + excursion.Latest));
         excursion.End();

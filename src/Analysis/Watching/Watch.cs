@@ -6,7 +6,7 @@ namespace Lampwarden.Analysis.Watching;
 /// </summary>
 public sealed partial class Watch
 {
-    private const int StateVersion = 5;
+    private const int StateVersion = 6;
     private const double LeastSettleSeconds = 5;
     private const double SlowInrushSeconds = 4, SlowInrushTimes = 8;
 
