@@ -70,9 +70,29 @@ public sealed class MeterTroubleTests
         await bench.NextAsync();
 
         bench.Meter.Begin(MeterTrouble.Babbling);
-        await bench.UntilAsync(_ => bench.Session.Health.LinesRefused.GetValueOrDefault(GapReason.StaleAnswer) > 200);
+        await bench.UntilAsync(_ => bench.Session.Health.LinesRefused.GetValueOrDefault(GapReason.StaleAnswer) > 20);
+        var seen = new List<MeterEvent>();
+        await bench.UntilAsync(_ => bench.Session.Health.LinesRefused.GetValueOrDefault(GapReason.StaleAnswer) > 400, seen);
         bench.Meter.End(MeterTrouble.Babbling);
-        await bench.UntilAsync(one => one.Value == Truth);
+        await bench.UntilAsync(one => one.Value == Truth, seen);
+
+        // What it babbles are numbers too: once it is known to babble, none of them may be believed.
+        Assert.All(seen.Where(one => one.Kind == MeterEventKind.Reading), one => Assert.Equal(Truth, one.Value));
+        Assert.Contains(seen, one => one.Reason == GapReason.StaleAnswer);
+    }
+
+    [Fact]
+    public async Task ReadAsync_StatusAnsweredTwiceInOnePiece_IsNotTakenForTheReading()
+    {
+        // The answer to *ESR? is a number as well: its second copy must not become a current of 0 A.
+        await using var bench = new TestBench(TestBench.NewTerminal(), session: options => options.Protocol.StatusSeconds = 0.001);
+        await bench.NextAsync();
+        bench.Meter.Begin(MeterTrouble.Glued);
+
+        for (var poll = 0; poll < 20; poll++)
+        {
+            Assert.Equal(Truth, (await bench.NextAsync()).Value);
+        }
     }
 
     [Fact]

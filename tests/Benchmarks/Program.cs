@@ -4,6 +4,7 @@ using Lampwarden.Benchmarks.Page;
 using Lampwarden.Benchmarks.Physics;
 using Lampwarden.Benchmarks.Recording;
 using Lampwarden.Benchmarks.Unattended;
+using Lampwarden.Benchmarks.Unattended.Haul;
 
 // Each subject is one word: dotnet run -c Release --project tests/Benchmarks -- SUBJECT [options]
 switch (args.FirstOrDefault())

@@ -1,3 +1,4 @@
+using System.Collections.Concurrent;
 using System.Text;
 using System.Threading.Channels;
 using Lampwarden.Acquisition.Transport;
@@ -22,14 +23,17 @@ internal readonly record struct Answer(byte[] Bytes, long FirstByteStamp, long L
 /// </summary>
 internal sealed class ScpiDialogue : ILineSink, IDisposable
 {
-    // More lines than this between two questions is babble: the newest are refused and counted.
+    private const int MostWaiting = 64; // more lines than this between two questions is babble: the newest are refused and counted
+    private readonly ConcurrentQueue<Answer> _answers = new();
+    // Rung once all lines of a piece lie in the queue: whoever wakes at the first must see the second, which may contradict it.
     // The asking task goes on at once on the reading task's thread: a wake-up of another thread costs more than all of a poll's own work.
-    private readonly Channel<Answer> _answers = Channel.CreateBounded<Answer>(
-        new BoundedChannelOptions(64) { SingleReader = true, SingleWriter = true, AllowSynchronousContinuations = true });
+    private readonly Channel<bool> _bell = Channel.CreateBounded<bool>(
+        new BoundedChannelOptions(1) { SingleReader = true, SingleWriter = true, AllowSynchronousContinuations = true, FullMode = BoundedChannelFullMode.DropWrite });
     private readonly Dictionary<string, byte[]> _commands = new(StringComparer.Ordinal);
     private readonly Wire _wire;
     private CancellationTokenSource _timer = new();
     private volatile Station _asking;
+    private byte[] _last = [];
     private volatile bool _sawLineTooLong;
 
     public ScpiDialogue(Wire wire, Station asking)
@@ -85,11 +89,14 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
         return await NextAsync(timer, cancellationToken);
     }
 
-    /// <summary>Refuses what came unasked; returns how many lines that were.</summary>
+    /// <summary>
+    /// Refuses what came unasked; returns how many of those lines say something else than the last answer. The same line again is a
+    /// stutter and does no harm; anything else means that the two sides may be out of step.
+    /// </summary>
     public int RefuseUnasked()
     {
         var count = 0;
-        while (_answers.Reader.TryRead(out var late))
+        while (_answers.TryDequeue(out var late))
         {
             if (IsEcho(late.Text))
             {
@@ -98,23 +105,31 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
             }
 
             late.Refuse(GapReason.StaleAnswer);
-            count++;
+            count += late.Text.SequenceEqual(ScpiNumber.TrimBlanks(_last)) ? 0 : 1;
         }
 
         return count;
     }
 
-    /// <summary>
-    /// Another line lies there already that says something else: two answers to one question, of which none can be believed.
-    /// The same line twice is a stutter, and refused with the next question.
-    /// </summary>
-    public bool IsContradicted(Answer answer) => _answers.Reader.TryPeek(out var other) && !IsEcho(other.Text) && !other.Text.SequenceEqual(answer.Text);
+    /// <summary>Another line lies there already that says something else: two answers to one question, of which none can be believed.</summary>
+    public bool IsContradicted(Answer answer)
+    {
+        foreach (var other in _answers)
+        {
+            if (!IsEcho(other.Text) && !other.Text.SequenceEqual(answer.Text))
+            {
+                return true;
+            }
+        }
+
+        return false;
+    }
 
     /// <summary>Forgets a line that began and never ended, so that the next answer is not glued to it.</summary>
     public void DropUnfinished() => _wire.DropUnfinished = true;
 
     /// <summary>The reading task has ended.</summary>
-    public void Complete(Exception? fault) => _answers.Writer.TryComplete(fault);
+    public void Complete(Exception? fault) => _bell.Writer.TryComplete(fault);
 
     /// <inheritdoc/>
     public void Dispose() => _timer.Dispose();
@@ -123,10 +138,13 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
     {
         var health = _asking.Health;
         health.LineReceived();
-        if (!_answers.Writer.TryWrite(new Answer(line.ToArray(), firstByteStamp, lastByteStamp, health)))
+        if (_answers.Count >= MostWaiting)
         {
             health.LineRefused(GapReason.StaleAnswer);
+            return;
         }
+
+        _answers.Enqueue(new Answer(line.ToArray(), firstByteStamp, lastByteStamp, health));
     }
 
     void ILineSink.OnLineTooLong(long stamp)
@@ -138,7 +156,15 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
         _sawLineTooLong = true;
     }
 
-    ValueTask ILineSink.RoomAsync(CancellationToken cancellationToken) => ValueTask.CompletedTask;
+    ValueTask ILineSink.RoomAsync(CancellationToken cancellationToken)
+    {
+        if (!_answers.IsEmpty)
+        {
+            _bell.Writer.TryWrite(true);
+        }
+
+        return ValueTask.CompletedTask;
+    }
 
     // Any command of ours, not only the last: one without an answer leaves its echo to whoever reads next.
     private bool IsEcho(ReadOnlySpan<byte> text)
@@ -183,13 +209,19 @@ internal sealed class ScpiDialogue : ILineSink, IDisposable
         {
             while (true)
             {
-                var answer = await _answers.Reader.ReadAsync(timer.Token);
-                if (!IsEcho(answer.Text))
+                if (!_answers.TryDequeue(out var answer))
                 {
+                    await _bell.Reader.ReadAsync(timer.Token);
+                }
+                else if (IsEcho(answer.Text))
+                {
+                    answer.PassOver();
+                }
+                else
+                {
+                    _last = answer.Bytes;
                     return answer;
                 }
-
-                answer.PassOver();
             }
         }
         catch (OperationCanceledException) when (!cancellationToken.IsCancellationRequested)

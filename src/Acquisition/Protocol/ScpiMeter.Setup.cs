@@ -13,11 +13,13 @@ internal sealed partial class ScpiMeter
     private const int PowerOn = 128;       // IEEE 488.2, standard event status register
     private const int AnyError = 4 | 8 | 16 | 32;
     private const int MostErrors = 32;     // an error queue holds about 20; a meter that never says 0 must not hold us up
+    private const int MostUnanswered = 3;  // once may be a stutter; a meter that has no such register costs a reply timeout each time
     private const int MostFailedSteps = 5; // then the wire itself is opened anew
     private string? _identity;
     private bool _sure; // the identity was heard twice
     private bool _hasErrorQueue = true;
     private bool _hasStatus = true;
+    private int _statusUnanswered;
     private long _lastCheck;
 
     private async Task PrepareAsync(ScpiDialogue dialogue, Station station, CancellationToken cancellationToken)
@@ -148,12 +150,17 @@ internal sealed partial class ScpiMeter
             || !int.TryParse(answer.ToString(), NumberStyles.AllowLeadingSign, CultureInfo.InvariantCulture, out var status))
         {
             reply?.Refuse(GapReason.StaleAnswer);
-            _hasStatus = false;
             _outOfStep = true;
-            Tell($"the meter does not answer {AskStatus}; a restart between two polls cannot be seen");
+            if (++_statusUnanswered == MostUnanswered)
+            {
+                _hasStatus = false;
+                Tell($"the meter does not answer {AskStatus}; a restart between two polls cannot be seen");
+            }
+
             return false;
         }
 
+        _statusUnanswered = 0;
         answer.PassOver();
         if ((status & AnyError) != 0 && _hasErrorQueue && !await DrainErrorsAsync(dialogue, "polling", cancellationToken))
         {

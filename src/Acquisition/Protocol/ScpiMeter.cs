@@ -13,8 +13,13 @@ internal sealed partial class ScpiMeter : IMeterProtocol
     private const double StalledPeriods = 3;
     private readonly MeterLine _line;
     private readonly TimeProvider _time;
+    // A meter that speaks unasked can do so between a question and its answer: for so many polls more is listened on for so long.
+    private const int GuardedPolls = 20;
+    private static readonly TimeSpan ListenOn = TimeSpan.FromMilliseconds(50);
     private bool _outOfStep;
+    private int _guarded;
     private int _failedSteps;
+    private Answer? _inHand; // taken in and not yet counted: where the session ends in between, it is passed over
 
     public ScpiMeter(MeterLine line, TimeProvider time)
     {
@@ -46,6 +51,7 @@ internal sealed partial class ScpiMeter : IMeterProtocol
         {
             await over.CancelAsync();
             await pump.ConfigureAwait(ConfigureAwaitOptions.SuppressThrowing);
+            _inHand?.PassOver();
             dialogue.RefuseUnasked();
         }
 
@@ -94,21 +100,22 @@ internal sealed partial class ScpiMeter : IMeterProtocol
 
     private async Task PollAsync(ScpiDialogue dialogue, Station station, CancellationToken cancellationToken)
     {
-        if (_outOfStep)
+        if (dialogue.RefuseUnasked() > 0)
         {
-            if (!await ResynchroniseAsync(dialogue, station, cancellationToken))
-            {
-                return; // its gap is given
-            }
+            Mistrust();
         }
-        else if (await HasRestartedAsync(dialogue, station, cancellationToken))
+
+        if (_outOfStep && !await ResynchroniseAsync(dialogue, station, cancellationToken))
         {
-            station.Outlet.Gap(GapReason.MeterRestarted, "the meter reports that it was switched on since it was set up (*ESR? bit 7); it is being set up again");
-            return;
+            return; // its gap is given
         }
 
         var query = station.Options.Protocol.Query;
-        dialogue.RefuseUnasked();
+        if (dialogue.RefuseUnasked() > 0)
+        {
+            Mistrust();
+        }
+
         var asked = station.Outlet.Clock.Now;
         if (await dialogue.AskAsync(query, cancellationToken) is not { } answer)
         {
@@ -116,9 +123,23 @@ internal sealed partial class ScpiMeter : IMeterProtocol
             return;
         }
 
+        _inHand = answer;
+        await WeighAsync(dialogue, station, query, asked, answer, cancellationToken);
+        _inHand = null;
+    }
+
+    /// <summary>Takes an answer for the reading, or says why not.</summary>
+    private async Task WeighAsync(ScpiDialogue dialogue, Station station, string query, long asked, Answer answer, CancellationToken cancellationToken)
+    {
+        if (_guarded > 0)
+        {
+            _guarded--;
+            await Task.Delay(ListenOn, cancellationToken);
+        }
+
         if (dialogue.IsContradicted(answer))
         {
-            _outOfStep = true;
+            Mistrust();
             answer.Refuse(GapReason.StaleAnswer);
             station.Outlet.Gap(GapReason.StaleAnswer, $"asked {query}: more than one answer came, beginning with {Excerpt.Of(answer.Bytes)}");
             return;
@@ -128,14 +149,28 @@ internal sealed partial class ScpiMeter : IMeterProtocol
         if (value.Kind == MeterEventKind.Gap)
         {
             answer.Refuse(value.Reason);
-            _outOfStep = value.Reason == GapReason.NotANumber; // it may be the answer to something else
+            _outOfStep |= value.Reason == GapReason.NotANumber; // it may be the answer to something else
             station.Outlet.Gap(value.Reason, $"asked {query}: {value.Detail}");
+            return;
+        }
+
+        // Asked after the reading and not before it: a second answer to this question could be taken for the reading.
+        if (await HasRestartedAsync(dialogue, station, cancellationToken))
+        {
+            answer.PassOver();
+            station.Outlet.Gap(GapReason.MeterRestarted, "the meter reports that it was switched on since it was set up (*ESR? bit 7); it is being set up again");
             return;
         }
 
         station.Health.LineUsed();
         station.Outlet.Value(value, answer.FirstByteStamp, station.Outlet.Clock.Seconds(asked, answer.LastByteStamp));
         station.Saw(value.Value);
+    }
+
+    private void Mistrust()
+    {
+        _outOfStep = true;
+        _guarded = GuardedPolls;
     }
 
     private void NoAnswer(ScpiDialogue dialogue, Station station, string question)

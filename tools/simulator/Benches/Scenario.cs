@@ -125,15 +125,23 @@ public sealed class ScenarioFault
     [Range(0.0, 3e6)]
     public double AtSeconds { get; set; }
 
-    /// <summary>hard-short, developing-short, open, lamp-out, mains-step, meter-unplugged.</summary>
-    [AllowedValues("hard-short", "developing-short", "open", "lamp-out", "mains-step", "meter-unplugged")]
+    /// <summary>hard-short, developing-short, open, intermittent, cycling, lamp-out, mains-step, meter-unplugged.</summary>
+    [AllowedValues("hard-short", "developing-short", "open", "intermittent", "cycling", "lamp-out", "mains-step", "meter-unplugged")]
     public string Kind { get; set; } = "";
 
     /// <summary>developing-short: minutes in which the unit's resistance falls to 37 %; 0.05 to 3000.</summary>
     [Range(0.05, 3000.0)]
     public double Minutes { get; set; } = 10;
 
-    /// <summary>meter-unplugged: simulated seconds until it is plugged in again; 0 for never.</summary>
+    /// <summary>intermittent, cycling: simulated seconds from one drop-out of the unit to the next (intermittent: on average); 0.1 to 36,000.</summary>
+    [Range(0.1, 36_000.0)]
+    public double EverySeconds { get; set; } = 60;
+
+    /// <summary>intermittent, cycling: simulated seconds a drop-out lasts; 0.02 to 3600.</summary>
+    [Range(0.02, 3600.0)]
+    public double OutSeconds { get; set; } = 2;
+
+    /// <summary>meter-unplugged: simulated seconds until it is plugged in again; intermittent, cycling: until it is over; 0 for never.</summary>
     [Range(0.0, 3e6)]
     public double ForSeconds { get; set; }
 

@@ -32,6 +32,7 @@ public sealed class SimulatedBench : ISimulatedQuantity
     private double _shortingMinutes;
     private double _mainsFactor = 1;
     private bool _isOpen;
+    private FailingContact? _contact;
 
     /// <summary>Builds the bench of a scenario, with what the scenario hides drawn from its seed.</summary>
     /// <exception cref="FormatException">A text of the scenario cannot be read.</exception>
@@ -83,6 +84,12 @@ public sealed class SimulatedBench : ISimulatedQuantity
                 Strike(_coming.Dequeue());
             }
 
+            if (_contact is { } contact && contact.IsOutAt(_seconds) != _isOpen)
+            {
+                _waveformUntil = _seconds + WaveformSeconds;
+                Connect(_isOpen);
+            }
+
             _circuit.MainsVolts = volts;
             if (!_isOpen)
             {
@@ -102,12 +109,15 @@ public sealed class SimulatedBench : ISimulatedQuantity
         switch (fault.Kind)
         {
             case "hard-short":
+                _contact = null;
                 _circuit.ReplaceUnit(ResistorUnit.Short);
                 break;
             case "open":
-                _circuit.ReplaceUnit(ResistorUnit.Open);
-                _circuit.FaultOhms = double.PositiveInfinity;
-                _isOpen = true;
+                _contact = null;
+                Connect(false);
+                break;
+            case "intermittent" or "cycling":
+                _contact = new FailingContact(fault, new Random(_scenario.Seed));
                 break;
             case "developing-short":
                 (_shortingSince, _shortingMinutes) = (_seconds, fault.Minutes);
@@ -119,6 +129,13 @@ public sealed class SimulatedBench : ISimulatedQuantity
                 _mainsFactor *= 1 + fault.Percent / 100;
                 break;
         }
+    }
+
+    private void Connect(bool isConnected)
+    {
+        _circuit.ReplaceUnit(isConnected ? _unit : ResistorUnit.Open);
+        _circuit.FaultOhms = double.PositiveInfinity;
+        _isOpen = !isConnected;
     }
 
     /// <summary>What lies in parallel with the nominal unit: its warm-up, and a fault that grows.</summary>

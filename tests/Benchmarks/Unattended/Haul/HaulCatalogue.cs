@@ -1,0 +1,74 @@
+using Lampwarden.Simulator.Benches;
+using Lampwarden.Simulator.Instruments;
+using MeterTrouble = Lampwarden.Simulator.Instruments.MeterTrouble;
+
+namespace Lampwarden.Benchmarks.Unattended.Haul;
+
+/// <summary>What can go wrong in a shift of the long haul.</summary>
+/// <param name="Name">A kind of <see cref="ScenarioFault"/> or <see cref="MeterTrouble"/> in kebab-case, or none.</param>
+/// <param name="Wanted">One of these names must come; empty: nothing may be said but notices, for the service must get over it.</param>
+/// <param name="MainsMeasured">Whether the bench has a meter on the mains.</param>
+internal sealed record HaulFault(string Name, string[] Wanted, bool MainsMeasured = false)
+{
+    /// <summary>Every fault of the bench and every trouble of the meter that the simulator knows, and two shifts without any.</summary>
+    public static readonly HaulFault[] Catalogue =
+    [
+        new("none", []),
+        new("hard-short", ["hard-short"]),
+        new("developing-short", ["developing-short", "hard-short", "runaway"]),
+        new("open", ["open-circuit"]),
+        new("intermittent", ["intermittent", "cycling"]),
+        new("cycling", ["intermittent", "cycling"]),
+        new("lamp-out", ["lamp-out"]),
+        // Without a meter on the mains nobody can tell it from a change of the unit: either name is right.
+        new("mains-step", ["mains-shift", "off-prediction"]),
+        new("mains-step", ["mains-shift"], MainsMeasured: true),
+        new("meter-unplugged", ["meter-silent"]),
+        new("silent", ["meter-silent"]),
+        new("garbled", ["meter-silent"]),
+        new("none", [], MainsMeasured: true),
+        new("half-lines", ["meter-silent"]),
+        new("stuck", ["meter-stuck"]),
+        new("late", ["meter-silent"]),
+        new("babbling", []),
+        new("nuls", []),
+        new("endless", []),
+        new("restarted", []),
+        new("split", []),
+        new("glued", []),
+    ];
+
+    private const double MinutesOfTrouble = 10;
+
+    /// <summary>How the table calls it.</summary>
+    public string Label => MainsMeasured ? Name + ", mains measured" : Name;
+
+    /// <summary>The bench on which it strikes.</summary>
+    /// <param name="atSeconds">When.</param>
+    /// <param name="seed">Of the bench.</param>
+    /// <param name="perSecond">Readings a second.</param>
+    public Scenario Script(double atSeconds, int seed, double perSecond)
+    {
+        var scenario = new Scenario
+        {
+            Name = "haul", Mains = "230 V 50 Hz", Bank = "100 W || 100 W", Unit = "resistor 700 ohm",
+            SwitchOnSeconds = 1, EndSeconds = 60_000, Seed = seed, MainsMeasured = MainsMeasured,
+        };
+        scenario.Meter.ReadingsPerSecond = perSecond;
+        if (Enum.TryParse<MeterTrouble>(Name.Replace("-", "", StringComparison.Ordinal), ignoreCase: true, out var trouble))
+        {
+            scenario.Meter.Troubles.Add(new ScheduledTrouble { Kind = trouble, AtSeconds = atSeconds, ForSeconds = MinutesOfTrouble * 60 });
+        }
+        else if (Name != "none")
+        {
+            scenario.Faults.Add(new ScenarioFault
+            {
+                Kind = Name, AtSeconds = atSeconds, Minutes = 30, Percent = -12, Lamp = 1,
+                ForSeconds = Name == "meter-unplugged" ? MinutesOfTrouble * 60 : 3 * MinutesOfTrouble * 60,
+                EverySeconds = 90, OutSeconds = 12,
+            });
+        }
+
+        return scenario;
+    }
+}

@@ -1,0 +1,110 @@
+using System.Globalization;
+using Lampwarden.Acquisition;
+using Lampwarden.Analysis.Lamps;
+using Lampwarden.Analysis.Watching;
+using Lampwarden.Host.Configuration;
+using Lampwarden.Host.Recording;
+using Lampwarden.Host.Soaking;
+using Lampwarden.Host.Unattended;
+using Lampwarden.Simulator.Benches;
+using Lampwarden.Simulator.Instruments;
+
+namespace Lampwarden.Benchmarks.Unattended.Haul;
+
+/// <summary>One bench's share of a shift.</summary>
+/// <param name="Fault">What was scripted.</param>
+/// <param name="Named">What the watch named at the fault or after it, of any severity.</param>
+/// <param name="Cries">Warnings and critical findings before the fault, or in a run in which nothing should be said.</param>
+/// <param name="Weighed">Polls, with and without a reading, that the soak handed on.</param>
+/// <param name="Stored">Readings and missed polls in the store.</param>
+internal sealed record HaulResult(HaulFault Fault, IReadOnlyList<string> Named, IReadOnlyList<string> Cries, long Weighed, long Stored)
+{
+    /// <summary>A name that was wanted has come, or none was.</summary>
+    public bool IsFound => Fault.Wanted.Length == 0 || Fault.Wanted.Any(Named.Contains);
+
+    /// <summary>What was said beside the wanted name.</summary>
+    public IEnumerable<string> SecondNames => Fault.Wanted.Length == 0 ? [] : Named.Except(Fault.Wanted);
+}
+
+/// <summary>A shift of twelve hours on four benches of one host, each with the next fault of the catalogue.</summary>
+internal static class HaulShift
+{
+    public const int Benches = 4;
+    public const double Hours = 12;
+    public const double PerSecond = 0.2;
+
+    /// <summary>Runs it.</summary>
+    /// <param name="shift">Counted from 0.</param>
+    /// <param name="folder">The record.</param>
+    /// <param name="atRound">Called before each poll.</param>
+    public static async Task<List<HaulResult>> RunAsync(int shift, string folder, Action<long> atRound)
+    {
+        using var time = new Lockstep(1 / PerSecond, atRound);
+        var rigs = new List<(SimulatedRig Rig, HaulFault Fault, double At)>();
+        var plans = new List<BenchPlan>();
+        for (var bench = 0; bench < Benches; bench++)
+        {
+            var number = (shift * Benches) + bench;
+            var fault = HaulFault.Catalogue[number % HaulFault.Catalogue.Length];
+            var at = FaultSeconds(number);
+            var rig = new SimulatedRig(fault.Script(at, number + 1, PerSecond), time, () => new TcpInstrumentPort());
+            rigs.Add((rig, fault, at));
+            plans.Add(Plan(bench, rig));
+        }
+
+        var documents = await SoakHost.RunAsync(
+            plans, folder, time, [time], false, () => time.Begin([.. plans.Select(plan => plan.Name)]), null, new AttendanceOrder(new LampwardenOptions()), CancellationToken.None);
+        var results = new List<HaulResult>();
+        using (var store = SoakStore.Open(folder, TimeProvider.System, StoreMode.Review))
+        {
+            foreach (var document in documents)
+            {
+                var run = store.Run(document.Run!);
+                var (_, fault, at) = rigs[plans.FindIndex(plan => plan.Name == run.Info.Bench)];
+                results.Add(Weigh(fault, at, document, time.Weighed(run.Info.Bench), run.Info.Readings + run.Gaps.Sum(gap => gap.Polls)));
+            }
+        }
+
+        foreach (var (rig, _, _) in rigs)
+        {
+            await rig.DisposeAsync();
+        }
+
+        return results;
+    }
+
+    private static HaulResult Weigh(HaulFault fault, double atSeconds, SoakDocument document, long weighed, long stored)
+    {
+        // The watch's zero is switch-on, and a reading covers what came before it: four polls of grace.
+        var from = fault.Name == "none" ? double.PositiveInfinity : atSeconds - (4 / PerSecond);
+        var alarms = document.Findings.Where(finding => finding.Severity != Severity.Notice);
+        return new HaulResult(
+            fault,
+            [.. document.Findings.Where(finding => finding.RaisedSeconds >= from).Select(finding => finding.Signature.Text()).Distinct()],
+            [.. alarms.Where(finding => fault.Wanted.Length == 0 || finding.RaisedSeconds < from).Select(finding => finding.Signature.Text())],
+            weighed,
+            stored);
+    }
+
+    private static BenchPlan Plan(int bench, SimulatedRig rig) => BenchPlan.From(
+        new BenchOptions
+        {
+            Name = string.Create(CultureInfo.InvariantCulture, $"bay-{bench + 1}"),
+            Mains = "230 V 50 Hz",
+            Bank = "100 W || 100 W",
+            Unit = "resistor 700 ohm",
+            Meters = [.. rig.Meters.Select(meter => new MeterOptions
+            {
+                Name = meter.Name,
+                Quantity = meter.Quantity == MeasuredQuantity.MainsVoltage ? Quantity.MainsVoltage : Quantity.LineCurrent,
+                ReadingsPerSecond = PerSecond,
+                ReplyTimeoutSeconds = 0.5,
+                Transport = new TransportOptions { Kind = meter.TransportKind, Port = meter.Place.Split(':')[1] },
+            })],
+            Soak = new SoakOptions { PlannedHours = Hours },
+        },
+        LampInventory.Empty);
+
+    /// <summary>Between the third and the tenth hour, so that there is a baseline before it and time to find it after.</summary>
+    private static double FaultSeconds(int number) => 10_800 + (number * 7919 % 25_200);
+}
