@@ -89,8 +89,15 @@ internal sealed class HealthyModel
     /// <summary>Noise variance of the block last compared.</summary>
     public double NoiseVariance { get; private set; }
 
-    /// <summary>How the warm-up moves in a few seconds ahead of the last block, relative.</summary>
-    public double DriftAhead(double seconds) => -x[Warm] * seconds * Math.Exp(-x[LogTau]);
+    /// <summary>How the warm-up moves between the last block and a moment after it, relative.</summary>
+    public double DriftAhead(double seconds) => x[Warm] * (Math.Exp(-seconds * Math.Exp(-x[LogTau])) - 1);
+
+    /// <summary>What wander adds to the doubt about the foretold in a time without readings, as a variance.</summary>
+    public double WanderAhead(double seconds)
+    {
+        var ambient = ambientSd * ambientSd * (1 - Math.Exp(-2 * seconds / ambientTau));
+        return mainsMeasured ? ambient : ambient + (MainsWanderSd * MainsWanderSd * (1 - Math.Exp(-2 * seconds / MainsWanderTau)));
+    }
 
     /// <summary>Carries the state over a time step.</summary>
     public void Advance(double seconds)

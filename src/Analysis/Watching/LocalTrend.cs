@@ -7,17 +7,18 @@ namespace Lampwarden.Analysis.Watching;
 internal sealed class LocalTrend
 {
     private const double TimeConstantSeconds = 6;
+    private const double LongestReachSeconds = 4 * TimeConstantSeconds;
     private double level = double.NaN;
     private double slope;
     private double last;
 
-    /// <summary>What the line foretells for a moment; NaN before the first reading.</summary>
-    public double At(double seconds) => level + (slope * (seconds - last));
+    /// <summary>What the line foretells for a moment; NaN before the first reading, and so long after the last that no line reaches there.</summary>
+    public double At(double seconds) => seconds - last > LongestReachSeconds ? double.NaN : level + (slope * (seconds - last));
 
     /// <summary>Follows one reading, pulled by no more than <paramref name="clip"/>.</summary>
     public void Follow(double seconds, double value, double clip)
     {
-        if (double.IsNaN(level) || seconds - last > 4 * TimeConstantSeconds)
+        if (double.IsNaN(level) || seconds - last > LongestReachSeconds)
         {
             (level, slope, last) = (value, 0, seconds);
             return;

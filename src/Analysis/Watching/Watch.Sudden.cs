@@ -47,7 +47,7 @@ public sealed partial class Watch
         log -= cycle.Offset;
         var model = slow.Model;
         var foretold = slow.Foretell(seconds, mains.Now);
-        var sd = Math.Sqrt(Math.Max(HeavyTails * noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance);
+        var sd = Math.Sqrt(Math.Max(HeavyTails * noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance + (seconds < gapForgottenSeconds ? gapVariance : 0));
         var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * mains.Unrest);
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);

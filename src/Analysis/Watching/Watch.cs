@@ -6,8 +6,9 @@ namespace Lampwarden.Analysis.Watching;
 /// </summary>
 public sealed partial class Watch
 {
-    private const int StateVersion = 6;
+    private const int StateVersion = 7;
     private const double LeastSettleSeconds = 5;
+    private const double LongGapSeconds = 30;
     private const double SlowInrushSeconds = 4, SlowInrushTimes = 8;
 
     private readonly WatchSettings settings;
@@ -28,6 +29,8 @@ public sealed partial class Watch
     private double firstSeconds = double.NaN;
     private double lastSeconds;
     private double lastReadingSeconds = double.NaN;
+    private double gapVariance;
+    private double gapForgottenSeconds;
     private double announcedSeconds = double.NegativeInfinity;
     private double armedAmps = double.NaN;
     private double holdUntilSeconds = double.NegativeInfinity;
@@ -215,6 +218,12 @@ public sealed partial class Watch
         {
             sudden.Skip();
             noise.Skip();
+            if (slow.Started && seconds - lastReadingSeconds > LongGapSeconds)
+            {
+                // Bench and mains went on unseen: until two blocks have shown where they are now, the first readings may stand apart.
+                gapVariance = slow.Model.WanderAhead(seconds - lastReadingSeconds);
+                gapForgottenSeconds = seconds + (2 * SlowChannel.BlockSeconds);
+            }
         }
 
         lastReadingSeconds = seconds;
@@ -249,6 +258,8 @@ public sealed partial class Watch
         state.Field(ref firstSeconds);
         state.Field(ref lastSeconds);
         state.Field(ref lastReadingSeconds);
+        state.Field(ref gapVariance);
+        state.Field(ref gapForgottenSeconds);
         state.Field(ref announcedSeconds);
         state.Field(ref holdUntilSeconds);
         state.Field(ref armedAmps);

@@ -50,6 +50,37 @@ public sealed class WatchBehaviourTests
         Assert.Contains(watch.Findings, finding => finding.Signature is Signature.DevelopingShort or Signature.Runaway && finding.RaisedSeconds > 9000);
     }
 
+    [Theory]
+    [InlineData(0.2, 600, false)]
+    [InlineData(0.2, 600, true)]
+    [InlineData(2, 120, false)]
+    [InlineData(2, 3600, false)]
+    public void Observe_CalmUnitAfterAGap_GivesNoFindingButTheSilence(double rate, double gapSeconds, bool mains)
+    {
+        // The slope of the last seconds before the gap and the end of the warm-up must not be drawn out over it.
+        var watch = new Watch(new WatchSettings { ReadingsPerSecond = rate, MainsMeasured = mains });
+        double Amps(double t)
+        {
+            var isGap = t % 7200 is > 5000 and var into && into < 5000 + gapSeconds;
+            return isGap ? double.NaN : 0.5 * (1 + (0.02 * Math.Exp(-t / 900)));
+        }
+
+        watch.Feed(Series.Of(5 * 7200, Amps, volts: mains ? Volts : null, rate: rate));
+        Assert.All(watch.Findings, finding => Assert.Equal(Signature.MeterSilent, finding.Signature));
+    }
+
+    [Theory]
+    [InlineData(600)]
+    [InlineData(3600)]
+    public void Observe_UnitShortedDuringAGap_IsFoundAtItsEnd(double gapSeconds)
+    {
+        var watch = Bench();
+        watch.Feed(Series.Of(9100 + gapSeconds, t => t < 9000 ? 0.5 : t < 9000 + gapSeconds ? double.NaN : 0.7));
+        var finding = Assert.Single(watch.Findings, finding => finding.Signature != Signature.MeterSilent);
+        Assert.Equal(Signature.HardShort, finding.Signature);
+        Assert.InRange(finding.RaisedSeconds, 9000 + gapSeconds, 9003 + gapSeconds);
+    }
+
     [Fact]
     public void Observe_LampGoesDark_IsNamedByItsEffect()
     {
