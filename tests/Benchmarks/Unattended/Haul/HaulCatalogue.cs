@@ -8,7 +8,8 @@ namespace Lampwarden.Benchmarks.Unattended.Haul;
 /// <param name="Name">A kind of <see cref="ScenarioFault"/> or <see cref="MeterTrouble"/> in kebab-case, or none.</param>
 /// <param name="Wanted">One of these names must come; empty: nothing may be said but notices, for the service must get over it.</param>
 /// <param name="MainsMeasured">Whether the bench has a meter on the mains.</param>
-internal sealed record HaulFault(string Name, string[] Wanted, bool MainsMeasured = false)
+/// <param name="May">What may come and need not.</param>
+internal sealed record HaulFault(string Name, string[] Wanted, bool MainsMeasured = false, string? May = null)
 {
     /// <summary>Every fault of the bench and every trouble of the meter that the simulator knows, and two shifts without any.</summary>
     public static readonly HaulFault[] Catalogue =
@@ -30,15 +31,19 @@ internal sealed record HaulFault(string Name, string[] Wanted, bool MainsMeasure
         new("half-lines", ["meter-silent"]),
         new("stuck", ["meter-stuck"]),
         new("late", ["meter-silent"]),
-        new("babbling", []),
-        new("nuls", []),
+        // Half the lines are spoilt, and after each the meter is asked who it is: few readings or none.
+        new("nuls", ["meter-silent"]),
+        // Off for the whole time, and back with its settings lost.
+        new("restarted", ["meter-silent"]),
+        // A number a moment that nobody asked for: readings or gaps, but nothing made of wrong numbers.
+        new("babbling", [], May: "meter-silent"),
         new("endless", []),
-        new("restarted", []),
         new("split", []),
         new("glued", []),
     ];
 
-    private const double MinutesOfTrouble = 10;
+    private const double MinutesOfTrouble = 5;
+    private const double MinutesOfContact = 30;
 
     /// <summary>How the table calls it.</summary>
     public string Label => MainsMeasured ? Name + ", mains measured" : Name;
@@ -64,7 +69,7 @@ internal sealed record HaulFault(string Name, string[] Wanted, bool MainsMeasure
             scenario.Faults.Add(new ScenarioFault
             {
                 Kind = Name, AtSeconds = atSeconds, Minutes = 30, Percent = -12, Lamp = 1,
-                ForSeconds = Name == "meter-unplugged" ? MinutesOfTrouble * 60 : 3 * MinutesOfTrouble * 60,
+                ForSeconds = Name == "meter-unplugged" ? MinutesOfTrouble * 60 : MinutesOfContact * 60,
                 EverySeconds = 90, OutSeconds = 12,
             });
         }

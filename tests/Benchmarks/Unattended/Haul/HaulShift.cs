@@ -81,7 +81,7 @@ internal static class HaulShift
         return new HaulResult(
             fault,
             [.. document.Findings.Where(finding => finding.RaisedSeconds >= from).Select(finding => finding.Signature.Text()).Distinct()],
-            [.. alarms.Where(finding => fault.Wanted.Length == 0 || finding.RaisedSeconds < from).Select(finding => finding.Signature.Text())],
+            [.. alarms.Where(finding => (fault.Wanted.Length == 0 || finding.RaisedSeconds < from) && finding.Signature.Text() != fault.May).Select(finding => finding.Signature.Text())],
             weighed,
             stored);
     }

@@ -13,7 +13,7 @@ namespace Lampwarden.Benchmarks.Unattended.Haul;
 /// <param name="atRound">Called before each round, with its number from 1.</param>
 internal sealed class Lockstep(double pollSeconds, Action<long> atRound) : FakeTimeProvider(TimeProvider.System.GetUtcNow()), ISoakListener, IDisposable
 {
-    private static readonly TimeSpan Patience = TimeSpan.FromSeconds(2);
+    private static readonly TimeSpan Patience = TimeSpan.FromSeconds(0.25);
 
     private readonly ConcurrentDictionary<string, long> _handled = new();
     private readonly ConcurrentDictionary<string, long> _weighed = new();
