@@ -79,6 +79,20 @@ public sealed partial class AlertBook
         }
     }
 
+    /// <summary>Closes whatever is open: its run is over, and another begins.</summary>
+    public IReadOnlyList<AlertChange> CloseAll(double seconds)
+    {
+        _entries.RemoveAll(entry => entry.IsPending);
+        var changes = new List<AlertChange>();
+        foreach (var entry in _entries.Where(entry => entry.Alert.IsOpen))
+        {
+            entry.Alert = entry.Alert with { State = AlertState.Normal, Standing = false, ShelvedUntilSeconds = null };
+            changes.Add(new AlertChange(seconds, AlertSteps.Closed, entry.Alert));
+        }
+
+        return changes;
+    }
+
     private AlertChange? ByPerson(int number, AlertEvent happened, string what, double seconds, string? by, string? reason)
     {
         if (Numbered(number) is not { } entry || Step(entry, happened, what, seconds) is not { } change)

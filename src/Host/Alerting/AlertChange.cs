@@ -46,6 +46,9 @@ public static class AlertSteps
     /// <summary>A person released a latched alert.</summary>
     public const string Reset = "reset";
 
+    /// <summary>Its run had ended, and now the bench's next soak begins.</summary>
+    public const string Closed = "closed";
+
     /// <summary>It is told again because nobody acknowledged it.</summary>
     public const string Repeated = "repeated";
 

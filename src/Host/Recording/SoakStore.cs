@@ -100,6 +100,14 @@ public sealed partial class SoakStore : IDisposable
     public Task AddNoteAsync(string run, string text, string? author = null, double? atSeconds = null, CancellationToken cancellationToken = default) =>
         AddNoteAsync(run, new Note(_time.GetUtcNow(), author, text, atSeconds), cancellationToken);
 
+    /// <summary>Keeps a step in the life of an alert whose run has ended.</summary>
+    /// <exception cref="StoreException">There is no such run, or it cannot be stored.</exception>
+    public Task AddAlertChangeAsync(string run, StoredAlertChange change, CancellationToken cancellationToken = default)
+    {
+        var key = KeyOf(run);
+        return DoAsync(batch => RunRows.Write(batch, key, change), cancellationToken);
+    }
+
     internal Task AddNoteAsync(string run, Note note, CancellationToken cancellationToken)
     {
         var key = KeyOf(run);

@@ -1,6 +1,7 @@
 using System.Threading.Channels;
 using Lampwarden.Acquisition;
 using Lampwarden.Analysis.Lamps;
+using Lampwarden.Host.Alerting;
 using Lampwarden.Host.Commands;
 using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Recording;
@@ -27,6 +28,7 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
     private readonly Lock _gate = new();
     private CancellationTokenSource? _ending;
     private MeterRoll? _idleMeters;
+    private AlertAftermath? _aftermath;
     private bool _free;
 
     /// <summary>The bench's name.</summary>
@@ -43,6 +45,15 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
 
     /// <summary>How its meters are doing.</summary>
     public IReadOnlyList<(MeterOptions Meter, MeterHealth Health)> Meters => Soak?.Meters ?? Volatile.Read(ref _idleMeters)?.Health ?? [];
+
+    /// <summary>Whether there are alerts to decide on: of the soak under way, or left open by the last.</summary>
+    public bool HasAlerts => Soak is not null || Volatile.Read(ref _aftermath) is not null;
+
+    /// <summary>Somebody does something about an alert of this bench.</summary>
+    /// <param name="decision">Given the book and the seconds of the run.</param>
+    /// <returns>The change; null where there was nothing to change.</returns>
+    public Task<AlertChange?> DecideAsync(Func<AlertBook, double, AlertChange?> decision) =>
+        Soak is { } soak ? soak.DecideAsync(decision) : Task.FromResult(Volatile.Read(ref _aftermath)?.Decide(decision));
 
     /// <summary>Makes a plan of what somebody wants, without starting anything.</summary>
     /// <exception cref="FormatException">A text cannot be read.</exception>
@@ -114,6 +125,7 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
             {
                 if (await IdleAsync(stop) is not { } request)
                 {
+                    await EndAftermathAsync(close: false);
                     return;
                 }
 
@@ -132,6 +144,7 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
     private async Task SoakAsync(BenchPlan plan, BringUp? bringUp, SoakResumption? resumption, Action<SoakDocument> closed, CancellationToken stop)
     {
         using var ending = CancellationTokenSource.CreateLinkedTokenSource(stop);
+        await EndAftermathAsync(close: true);
         lock (_gate)
         {
             _ending = ending;
@@ -147,6 +160,9 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
             {
                 closed(document);
             }
+
+            // Where the bench ends with its soak, nobody is left to tell; where the service ends, the next one takes the run's alerts over.
+            Volatile.Write(ref _aftermath, staysOpen && !stop.IsCancellationRequested ? Soak.LeaveAlerts() : null);
         }
         finally
         {
@@ -154,6 +170,19 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
             {
                 (_ending, Soak) = (null, null);
             }
+        }
+    }
+
+    private async Task EndAftermathAsync(bool close)
+    {
+        if (Interlocked.Exchange(ref _aftermath, null) is { } aftermath)
+        {
+            if (close)
+            {
+                aftermath.Close();
+            }
+
+            await aftermath.DisposeAsync();
         }
     }
 

@@ -31,6 +31,7 @@ public sealed class Soak
 
     private RunRecorder? _recorder;
     private Action<AlertChange>? _tell;
+    private RunEnded? _left;
     private double _originSeconds;
     private double _firstPollSeconds = double.NaN;
     private double _excusedUntilSeconds = double.NegativeInfinity;
@@ -99,6 +100,9 @@ public sealed class Soak
     /// <summary>The run's id; null before it began. Safe from any thread.</summary>
     public string? Run => _recorder?.Run;
 
+    /// <summary>What becomes of the alerts that the closed run left open; null where it left none. To be asked once, after the end.</summary>
+    public AlertAftermath? LeaveAlerts() => _left is null ? null : new AlertAftermath(_alerts, _left, _store, _around);
+
     /// <summary>How the meters are doing. Safe from any thread.</summary>
     public IReadOnlyList<(MeterOptions Meter, MeterHealth Health)> Meters => _meters.Health;
 
@@ -111,10 +115,6 @@ public sealed class Soak
         soak.Publish(change);
         return change;
     });
-
-    /// <summary>Somebody has seen an alert. Safe from any thread; carried out by the soak's loop.</summary>
-    public Task<AlertChange?> AcknowledgeAsync(int alertNumber, string? by = null) =>
-        DecideAsync((book, seconds) => book.Acknowledge(alertNumber, seconds, by));
 
     /// <summary>
     /// Somebody changed something on the bench: the watch is told, and a note of the run says so. Safe from any thread;
@@ -334,10 +334,7 @@ public sealed class Soak
             return;
         }
 
-        var alert = change.Alert;
-        _recorder.AppendAlert(new StoredAlertChange(
-            change.Seconds, _around.Time.GetUtcNow(), FormattableString.Invariant($"{alert.Number}"), change.What, alert.State.ToString(), change.By, alert.Text,
-            JsonSerializer.Serialize(change, Json.Compact)));
+        _recorder.AppendAlert(AlertRows.Of(change, _around.Time.GetUtcNow()));
         Tell(new AlertChanged(_plan.Name, change));
         _tell!(change);
     }
@@ -366,7 +363,9 @@ public sealed class Soak
 
         Log.SoakEnded(_around.Logger, _plan.Name, _recorder.Run, judgement.Verdict.Text(), _ledger.LastSeconds, _ledger.Readings);
         document = document with { Run = _recorder.Run, Record = _store.FilePath };
-        Tell(new RunEnded(_plan.Name, _ledger.LastSeconds, document, judgement));
+        var ended = new RunEnded(_plan.Name, _ledger.LastSeconds, document, judgement);
+        Tell(ended);
+        _left = _alerts.Alerts.Any(alert => alert.IsOpen) ? ended : null;
         return document;
     }
 

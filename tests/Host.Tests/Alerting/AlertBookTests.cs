@@ -241,4 +241,18 @@ public sealed class AlertBookTests
         Assert.Equal(1, Assert.Single(next.Tick(800)).Alert.Repeats);
         Assert.Equal(3, next.Take(Change(ChangeKind.Raised, 3, Signature.LampOut), 900)!.Alert.Number);
     }
+
+    [Fact]
+    public void CloseAll_WhateverIsOpen_IsClosedAndNeverToldAgain()
+    {
+        var book = new AlertBook("bay-3", new AlertRules { OnDelaySeconds = 30 });
+        book.Take(Change(ChangeKind.Raised, 1, Signature.HardShort, Severity.Critical), 100);
+        book.Take(Change(ChangeKind.Raised, 2, Signature.OpenCircuit, Severity.Critical), 110);
+        book.Take(Change(ChangeKind.Raised, 3), 120);
+        book.Acknowledge(2, 125, "Kim");
+        Assert.Equal([(1, "closed"), (2, "closed")], book.CloseAll(130).Select(change => (change.Alert.Number, change.What)));
+        Assert.DoesNotContain(book.Alerts, alert => alert.IsOpen);
+        Assert.Empty(book.Tick(10_000));
+        Assert.Empty(book.CloseAll(10_001));
+    }
 }

@@ -14,22 +14,19 @@ public sealed class AnnouncementTests
     public async Task Announce_DuringARun_IsKeptAsANoteAtItsTime()
     {
         await using var live = await LivePage.OpenAsync(speed: 20);
-        using var client = new HttpClient { BaseAddress = live.Url };
-        await UntilAsync(client, bench => bench.GetProperty("canStart").GetBoolean());
-        using var started = await client.PostAsJsonAsync(new Uri("/api/benches/attic/soak", UriKind.Relative), new { unit = "resistor 300 ohm", bank = "60 W 120 V", plannedHours = 1 }, Cancellation);
-        Assert.Equal(HttpStatusCode.Accepted, started.StatusCode);
-        await UntilAsync(client, bench => bench.GetProperty("phase").GetString() == "waiting");
-        Assert.Equal((HttpStatusCode.Conflict, "No run"), await RefusedAsync(client, "attic", new { kind = "load-changed" }));
+        await live.UntilAsync(bench => bench.GetProperty("canStart").GetBoolean());
+        Assert.Equal(HttpStatusCode.Accepted, await live.PostAsync("soak", new { unit = "resistor 300 ohm", bank = "60 W 120 V", plannedHours = 1 }));
+        await live.UntilAsync(bench => bench.GetProperty("phase").GetString() == "waiting");
+        Assert.Equal((HttpStatusCode.Conflict, "No run"), await RefusedAsync(live.Client, "attic", new { kind = "load-changed" }));
 
         live.Bench.Amps = 0.3;
-        var soaking = await UntilAsync(client, bench => bench.GetProperty("run").ValueKind == JsonValueKind.String && bench.GetProperty("seconds").GetDouble() > 5);
+        var soaking = await live.UntilAsync(bench => bench.GetProperty("run").ValueKind == JsonValueKind.String && bench.GetProperty("seconds").GetDouble() > 5);
         foreach (var body in new object[] { new { kind = "load-changed", detail = "  Volume to half " }, new { kind = "cycles-by-itself" }, new { kind = "meter-changed", detail = "" } })
         {
-            using var answer = await client.PostAsJsonAsync(new Uri("/api/benches/attic/announcements", UriKind.Relative), body, Cancellation);
-            Assert.Equal(HttpStatusCode.NoContent, answer.StatusCode);
+            Assert.Equal(HttpStatusCode.NoContent, await live.PostAsync("announcements", body));
         }
 
-        var record = await client.GetFromJsonAsync<JsonElement>(new Uri($"/api/runs/{soaking.GetProperty("run").GetString()}", UriKind.Relative), Cancellation);
+        var record = await live.RunAsync(soaking.GetProperty("run").GetString());
         var notes = record.GetProperty("notes").EnumerateArray().ToList();
         Assert.Equal(
             ["Told the watch: the load was changed. Volume to half", "Told the watch: the unit switches by itself.", "Told the watch: the meter's range was changed."],
@@ -77,22 +74,5 @@ public sealed class AnnouncementTests
     {
         using var answer = await client.PostAsJsonAsync(new Uri($"/api/benches/{bench}/announcements", UriKind.Relative), body, Cancellation);
         return (answer.StatusCode, (await answer.Content.ReadFromJsonAsync<JsonElement>(Cancellation)).GetProperty("title").GetString());
-    }
-
-    private static async Task<JsonElement> UntilAsync(HttpClient client, Func<JsonElement, bool> good)
-    {
-        JsonElement bench = default;
-        for (var attempt = 0; attempt < 600; attempt++)
-        {
-            bench = await client.GetFromJsonAsync<JsonElement>(new Uri("/api/benches/attic", UriKind.Relative), Cancellation);
-            if (good(bench))
-            {
-                return bench;
-            }
-
-            await Task.Delay(20, Cancellation);
-        }
-
-        throw new InvalidOperationException($"The bench never came to it: {bench}");
     }
 }

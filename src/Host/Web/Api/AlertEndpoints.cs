@@ -38,12 +38,12 @@ internal static class AlertEndpoints
             return Desks.Missing(bench);
         }
 
-        if (desk.Soak is not { } soak)
+        if (!desk.HasAlerts)
         {
             return BenchEndpoints.NoRun(bench);
         }
 
-        return await soak.DecideAsync(decision) is { } change
+        return await desk.DecideAsync(decision) is { } change
             ? TypedResults.Ok(change.Alert)
             : Problems.Of(StatusCodes.Status409Conflict, "Nothing to change", "There is no such alert, or somebody did this before.");
     }

@@ -1,3 +1,6 @@
+using System.Net;
+using System.Net.Http.Json;
+using System.Text.Json;
 using Lampwarden.Analysis.Lamps;
 using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Soaking;
@@ -28,6 +31,9 @@ internal sealed class LivePage : IAsyncDisposable
 
     public Uri Url { get; private set; } = null!;
 
+    /// <summary>Speaks to it.</summary>
+    public HttpClient Client { get; private set; } = null!;
+
     /// <summary>Opens it; the bench is idle until a soak is started from the page.</summary>
     /// <param name="speed">How many times faster than life its clock runs.</param>
     public static async Task<LivePage> OpenAsync(double speed = 10)
@@ -53,11 +59,42 @@ internal sealed class LivePage : IAsyncDisposable
         }
 
         page.Url = new Uri(page._prose.ToString().Split("The page: ")[1].Trim());
+        page.Client = new HttpClient { BaseAddress = page.Url };
         return page;
     }
 
+    /// <summary>The bench, once it is as wanted.</summary>
+    public async Task<JsonElement> UntilAsync(Func<JsonElement, bool> good)
+    {
+        JsonElement bench = default;
+        for (var attempt = 0; attempt < 600; attempt++)
+        {
+            bench = await Client.GetFromJsonAsync<JsonElement>(new Uri("/api/benches/attic", UriKind.Relative), TestContext.Current.CancellationToken);
+            if (good(bench))
+            {
+                return bench;
+            }
+
+            await Task.Delay(50, TestContext.Current.CancellationToken);
+        }
+
+        throw new TimeoutException($"The bench never came to it: {bench}");
+    }
+
+    /// <summary>Asks for something to be done on the bench.</summary>
+    public async Task<HttpStatusCode> PostAsync(string rest, object body)
+    {
+        using var answer = await Client.PostAsJsonAsync(new Uri($"/api/benches/attic/{rest}", UriKind.Relative), body, TestContext.Current.CancellationToken);
+        return answer.StatusCode;
+    }
+
+    /// <summary>A run as it is on record.</summary>
+    public Task<JsonElement> RunAsync(string? run) =>
+        Client.GetFromJsonAsync<JsonElement>(new Uri($"/api/runs/{run}", UriKind.Relative), TestContext.Current.CancellationToken);
+
     public async ValueTask DisposeAsync()
     {
+        Client.Dispose();
         await _stop.CancelAsync();
         await _running;
         await Bench.DisposeAsync();
