@@ -26,13 +26,14 @@ internal sealed class ReplayCommand : CliCommand
 
     protected override Task<int> RunAsync(ParseResult parsed, Terminal terminal, CancellationToken cancellation)
     {
-        var (series, own) = Read(parsed);
+        var (series, own, announcements) = Read(parsed);
         var settings = Settings(parsed.GetValue(_config), parsed.GetValue(_bench), series, own);
-        var ledger = new SoakLedger(settings);
+        var ledger = new SoakLedger(AnnouncementReplay.SettingsOf(announcements, settings));
+        var told = new AnnouncementReplay(announcements);
         foreach (var observation in series)
         {
             cancellation.ThrowIfCancellationRequested();
-            foreach (var change in ledger.Take(observation, "blank"))
+            foreach (var change in told.Before(observation.Seconds, ledger).Concat(ledger.Take(observation, "blank")))
             {
                 terminal.Prose.WriteLine(Narration.Line(observation.Seconds, change));
             }
@@ -54,17 +55,18 @@ internal sealed class ReplayCommand : CliCommand
     }
 
     // A stored run brings its own bench along; a configuration named beside it replaces that.
-    private (IReadOnlyList<Observation> Series, BenchOptions? Own) Read(ParseResult parsed)
+    private (IReadOnlyList<Observation> Series, BenchOptions? Own, IReadOnlyList<StoredAnnouncement> Announcements) Read(ParseResult parsed)
     {
         var name = parsed.GetValue(_file)!;
         var folder = parsed.GetValue(_record);
         if (File.Exists(name) || (folder is null && !StoredSeries.IsRunId(name)))
         {
-            return (SeriesFile.Read(name), null);
+            return (SeriesFile.Read(name), null, []);
         }
 
         using var store = SoakStore.Open(RecordFolder.Of(folder, parsed.GetValue(_config) ?? ConfigurationFile.DefaultPath), TimeProvider.System, StoreMode.Review);
-        return (StoredSeries.Read(store, name), StoredSeries.BenchOf(store.Run(name)));
+        var record = store.Run(name);
+        return (StoredSeries.Read(store, name), StoredSeries.BenchOf(record), record.Announcements);
     }
 
     private static WatchSettings Settings(string? config, string? bench, IReadOnlyList<Observation> series, BenchOptions? own)

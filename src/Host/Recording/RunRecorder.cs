@@ -49,6 +49,9 @@ public sealed class RunRecorder
     /// <summary>Appends a step in the life of an alert. Await <see cref="FlushAsync"/> before anybody is told of it.</summary>
     public bool AppendAlert(StoredAlertChange change) => Add(change.Seconds, batch => RunRows.Write(batch, _run.Key, change));
 
+    /// <summary>Appends what the watch was told.</summary>
+    public bool AppendAnnouncement(StoredAnnouncement told) => Add(told.Seconds, batch => RunRows.Write(batch, _run.Key, told));
+
     /// <summary>Has everything appended so far put on disk, at once.</summary>
     /// <returns>True: it is on disk. False: it is not, and <see cref="StoreHealth.Trouble"/> says why; it stays queued and is tried again.</returns>
     public async Task<bool> FlushAsync(CancellationToken cancellationToken = default)
@@ -72,7 +75,7 @@ public sealed class RunRecorder
             && await action.Done.WaitAsync(cancellationToken) is null;
     }
 
-    /// <summary>Gaps, finding changes and alert changes of a run recorded elsewhere, as they were.</summary>
+    /// <summary>Gaps, finding changes, alert changes and announcements of a run recorded elsewhere, as they were.</summary>
     internal bool AppendStored(RunRecord record) => Add(0, batch =>
     {
         foreach (var gap in record.Gaps)
@@ -90,6 +93,11 @@ public sealed class RunRecorder
         foreach (var change in record.AlertChanges)
         {
             RunRows.Write(batch, _run.Key, change);
+        }
+
+        foreach (var told in record.Announcements)
+        {
+            RunRows.Write(batch, _run.Key, told);
         }
 
         batch.Run("UPDATE runs SET lost=? WHERE run=?", record.Info.Lost, _run.Key);

@@ -40,6 +40,9 @@ public sealed record RunRecord(
     IReadOnlyList<Note> Notes,
     IReadOnlyList<AttachmentInfo> Attachments)
 {
+    /// <summary>What the watch was told during the run, in order.</summary>
+    public IReadOnlyList<StoredAnnouncement> Announcements { get; init; } = [];
+
     /// <summary>Every finding of the run in its latest form, by number.</summary>
     [System.Text.Json.Serialization.JsonIgnore]
     public IReadOnlyList<Finding> Findings { get; } =
@@ -54,6 +57,13 @@ public sealed record StoredGap(double FromSeconds, double ToSeconds, string Reas
 
 /// <summary>A finding change and when it was seen, in seconds since the run began.</summary>
 public sealed record StoredFindingChange(double Seconds, FindingChange Change);
+
+/// <summary>Something that a person, or a bring-up, told the watch.</summary>
+/// <param name="Seconds">Seconds since the run began; told after the reading of that time and before the next.</param>
+/// <param name="Kind">Kebab-case, such as load-changed.</param>
+/// <param name="Detail">The person's words, or the bank.</param>
+/// <param name="ExpectationJson">The new prediction; null where there is none.</param>
+public sealed record StoredAnnouncement(double Seconds, string Kind, string? Detail = null, string? ExpectationJson = null);
 
 /// <summary>One step in the life of an alert.</summary>
 /// <param name="Seconds">Seconds since the run began.</param>

@@ -29,6 +29,15 @@ internal static class RunRows
         run, StoreBatch.Milliseconds(change.Seconds), change.Utc.ToUnixTimeMilliseconds(), change.Alert, change.Transition, change.State,
         change.By, change.Text, change.Json);
 
+    public static void Write(StoreBatch batch, long run, StoredAnnouncement told) => batch.Run(
+        "INSERT INTO announcements (run, at_ms, kind, detail, expectation) VALUES (?,?,?,?,?)",
+        run, StoreBatch.Milliseconds(told.Seconds), told.Kind, told.Detail, told.ExpectationJson);
+
+    public const string AnnouncementColumns = "at_ms, kind, detail, expectation";
+
+    public static StoredAnnouncement ReadAnnouncement(SqliteDataReader row) =>
+        new(row.GetInt64(0) / 1000.0, row.GetString(1), Text(row, 2), Text(row, 3));
+
     public const string FindingColumns =
         "at_ms, kind, number, signature, severity, onset_seconds, raised_seconds, cleared_seconds, explanation, evidence";
 

@@ -50,7 +50,10 @@ public sealed partial class SoakStore
                 reader.List($"SELECT {RunRows.FindingColumns} FROM finding_changes WHERE run=$run ORDER BY change", RunRows.ReadFinding, ("$run", key)),
                 reader.List($"SELECT {RunRows.AlertColumns} FROM alert_changes WHERE run=$run ORDER BY change", RunRows.ReadAlert, ("$run", key)),
                 reader.List("SELECT utc_ms, author, text, at_ms FROM notes WHERE run=$run ORDER BY note", ReadNote, ("$run", key)),
-                reader.List("SELECT name, media_type, utc_ms, bytes, sha256 FROM attachments WHERE run=$run ORDER BY attachment", ReadAttachment, ("$run", key))),
+                reader.List("SELECT name, media_type, utc_ms, bytes, sha256 FROM attachments WHERE run=$run ORDER BY attachment", ReadAttachment, ("$run", key)))
+            {
+                Announcements = reader.List($"SELECT {RunRows.AnnouncementColumns} FROM announcements WHERE run=$run ORDER BY announcement", RunRows.ReadAnnouncement, ("$run", key)),
+            },
             ("$run", key))[0]);
     }
 

@@ -70,6 +70,12 @@ internal static class StoreSchema
         """
         DROP TABLE watch_states;
         """,
+        // What a person told the watch, in a form it can be told again: notes are for people.
+        """
+        CREATE TABLE announcements (
+            announcement INTEGER PRIMARY KEY, run INTEGER NOT NULL, at_ms INTEGER NOT NULL, kind TEXT NOT NULL, detail TEXT, expectation TEXT);
+        CREATE INDEX announcements_of_run ON announcements (run, announcement);
+        """,
     ];
 
     /// <summary>For a file that cannot be written, and so not be brought to this version.</summary>

@@ -25,6 +25,9 @@ public static class AnnouncementWords
         return index < 0 ? null : Kinds[index].Kind;
     }
 
+    /// <summary>The name of a kind.</summary>
+    public static string NameOf(AnnouncementKind kind) => Array.Find(Kinds, one => one.Kind == kind).Name;
+
     /// <summary>The note that keeps an announcement with the run: what was done, then the person's own words.</summary>
     public static string Note(Announcement what)
     {

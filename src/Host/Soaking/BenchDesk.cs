@@ -116,7 +116,8 @@ public sealed class BenchDesk(BenchPlan configured, LampInventory inventory, Soa
         if (resumption is not null)
         {
             var last = resumption.Last;
-            next = (BenchPlan.From(configured.Options.With(last.Bank, last.Unit, last.PlannedHours, last.UnitLabel), inventory), null);
+            var plan = BenchPlan.From(configured.Options.With(last.Bank, last.Unit, last.PlannedHours, last.UnitLabel), inventory);
+            next = (plan, AnnouncementReplay.BankOfOpenBringUp(resumption.Announcements) is { } bank ? BringUp.TakeUp(StepsOf(plan), bank) : null);
         }
 
         while (!stop.IsCancellationRequested)

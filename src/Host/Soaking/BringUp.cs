@@ -38,7 +38,9 @@ public sealed record BringUpMove(Announcement? Announcement, string? Note);
 /// Follows a bring-up by the current alone: a lamp that is switched in moves the current by a share that the prediction
 /// names. Not thread-safe: owned by the soak's loop. Time enters with the observations.
 /// </summary>
-public sealed class BringUp(IReadOnlyList<BringUpStep> steps)
+/// <param name="steps">From the first lamps to the whole bank.</param>
+/// <param name="at">The step that is in already, where a bring-up is taken up again.</param>
+public sealed class BringUp(IReadOnlyList<BringUpStep> steps, int at = 0)
 {
     // Filaments and unit have come to rest by then: half a dozen of the longest settling times that lamps in series show.
     private const double HoldSeconds = 3;
@@ -49,13 +51,21 @@ public sealed class BringUp(IReadOnlyList<BringUpStep> steps)
     // A change below this share cannot be told from the mains' own wander.
     private const double LeastShare = 0.03;
 
-    private int _at;
-    private string _state = "waiting";
+    private int _at = at;
+    private string _state = at == 0 ? "waiting" : "moving";
     private double _movedSeconds = double.NaN;
     private double _aboveSinceSeconds = double.NaN;
     private double _baselineAmps = double.NaN;
     private double _beforeAmps = double.NaN;
     private string? _said;
+
+    /// <summary>A bring-up that was left off at a bank, taken up again there.</summary>
+    /// <returns>Null where no step has that bank: the lamps or the plan are others now.</returns>
+    public static BringUp? TakeUp(IReadOnlyList<BringUpStep> steps, string bank)
+    {
+        var at = Enumerable.Range(0, steps.Count).FirstOrDefault(step => steps[step].Bank == bank, -1);
+        return at < 0 ? null : new BringUp(steps, at);
+    }
 
     /// <summary>The bench as it is at this step.</summary>
     public BenchPlan Plan => steps[_at].Plan;

@@ -50,7 +50,9 @@ public sealed class Soak
         }
 
         (_plan, _store, _around, _bringUp, _resumption) = (plan, store, around, bringUp, resumption);
-        _ledger = new SoakLedger(bringUp is null ? plan.WatchSettings : plan.WatchSettings with { Expectation = bringUp.Plan.WatchSettings.Expectation });
+        _ledger = new SoakLedger(resumption is not null ? AnnouncementReplay.SettingsOf(resumption.Announcements, plan.WatchSettings)
+            : bringUp is not null ? plan.WatchSettings with { Expectation = bringUp.Plan.WatchSettings.Expectation }
+            : plan.WatchSettings);
         _alerts = new AlertBook(plan.Name, around.Rules);
         _meters = new MeterRoll(plan, around);
     }
@@ -130,7 +132,7 @@ public sealed class Soak
                 return null;
             }
 
-            soak.Publish(soak._ledger.Watch.Announce(soak._ledger.LastSeconds, what));
+            soak.Announce(what);
             return soak.NoteAsync(AnnouncementWords.Note(what), soak._ledger.LastSeconds);
         });
         if (noted is null)
@@ -219,6 +221,11 @@ public sealed class Soak
         Tell(new RunBegan(_plan.Name, recorder.Run, _bringUp?.Plan ?? _plan, look.Utc));
         if (_bringUp is not null)
         {
+            if (_resumption is null)
+            {
+                recorder.AppendAnnouncement(AnnouncementReplay.Begun(_bringUp.Plan));
+            }
+
             Tell(new BringUpMoved(_plan.Name, _bringUp.Status));
         }
 
@@ -291,8 +298,13 @@ public sealed class Soak
 
         if (move.Announcement is not null)
         {
-            Publish(_ledger.Watch.Announce(_ledger.LastSeconds, move.Announcement));
+            Announce(move.Announcement);
             Tell(new PlanChanged(_plan.Name, _bringUp!.Plan));
+        }
+
+        if (_bringUp!.Status.Over)
+        {
+            _recorder!.AppendAnnouncement(new StoredAnnouncement(_ledger.LastSeconds, AnnouncementReplay.BringUpOver));
         }
 
         if (move.Note is not null)
@@ -300,8 +312,14 @@ public sealed class Soak
             _ = NoteAsync(move.Note, _ledger.LastSeconds);
         }
 
-        Tell(new BringUpMoved(_plan.Name, _bringUp!.Status));
+        Tell(new BringUpMoved(_plan.Name, _bringUp.Status));
         return true;
+    }
+
+    private void Announce(Announcement what)
+    {
+        _recorder!.AppendAnnouncement(AnnouncementReplay.Row(_ledger.LastSeconds, what));
+        Publish(_ledger.Watch.Announce(_ledger.LastSeconds, what));
     }
 
     private async Task NoteAsync(string text, double seconds)
@@ -350,8 +368,9 @@ public sealed class Soak
     private async Task<SoakDocument> CloseAsync(bool serviceStops)
     {
         var (document, judgement) = _ledger.Close(_ledger.LastSeconds);
-        if (serviceStops && judgement.Verdict == Verdict.Incomplete)
+        if (serviceStops && _ledger.LastSeconds < _plan.PlannedSeconds)
         {
+            // Whatever the verdict: a unit that has failed is still live, and the next service watches it on.
             judgement = judgement with { Reasons = [.. judgement.Reasons, SoakResumption.StoppedReason] };
         }
 

@@ -29,6 +29,9 @@ public sealed class SoakResumption
     /// <summary>When the soak began, however many runs it has been recorded in.</summary>
     public DateTimeOffset StartedUtc => _runs[0].Info.StartedUtc;
 
+    /// <summary>What the watch was told in all the runs of the soak.</summary>
+    public IReadOnlyList<StoredAnnouncement> Announcements => [.. _runs.SelectMany(run => run.Announcements)];
+
     /// <summary>Finds what is to be carried on at a bench.</summary>
     /// <param name="store">Open for recording.</param>
     /// <param name="bench">Which.</param>
@@ -38,7 +41,7 @@ public sealed class SoakResumption
     public static SoakResumption? Find(SoakStore store, string bench, TimeSpan within, DateTimeOffset now)
     {
         var last = store.Runs(new RunFilter(Bench: bench)).OrderBy(run => run.StartedUtc).ThenBy(run => run.Run, StringComparer.Ordinal).LastOrDefault();
-        if (last is not { Verdict: Verdict.Incomplete, EndedUtc: { } ended } || now - ended > within || last.LengthSeconds >= last.PlannedHours * 3600)
+        if (last is not { EndedUtc: { } ended } || now - ended > within || last.LengthSeconds >= last.PlannedHours * 3600)
         {
             return null;
         }
@@ -58,19 +61,22 @@ public sealed class SoakResumption
         return new SoakResumption(store, runs);
     }
 
-    /// <summary>Weighs the earlier readings again.</summary>
+    /// <summary>Weighs the earlier readings again, and tells the watch again what it was told.</summary>
     /// <returns>Seconds of the last of them.</returns>
     public double Replay(SoakLedger ledger)
     {
+        var told = new AnnouncementReplay(Announcements);
         foreach (var run in _runs)
         {
             foreach (var reading in _store.Readings(run.Info.Run))
             {
                 var reason = reading.IsMissing ? run.Gaps.LastOrDefault(gap => gap.FromSeconds <= reading.Seconds)?.Reason ?? GapReason : "";
+                told.Before(reading.Seconds, ledger);
                 ledger.Take(new Observation(reading.Seconds, reading.Amps, reading.MainsVolts), reason);
             }
         }
 
+        told.Before(double.PositiveInfinity, ledger);
         return ledger.LastSeconds;
     }
 
