@@ -35,4 +35,13 @@ public sealed record BankChoice(
 /// <param name="ExpectHighAmps">And at most this.</param>
 /// <param name="StopAboveAmps">Switch off if the settled meter shows more.</param>
 /// <param name="Why">One sentence.</param>
-public sealed record BringUpAdvice(string Bank, double ExpectLowAmps, double ExpectHighAmps, double StopAboveAmps, string Why);
+public sealed record BringUpAdvice(string Bank, double ExpectLowAmps, double ExpectHighAmps, double StopAboveAmps, string Why)
+{
+    /// <summary>Below this contrast lamps and mains of a few percent off make health and a short look alike: no step of a bring-up.</summary>
+    public const double LeastContrast = 1.2;
+
+    /// <summary>Midway between health and a dead short, in ratios; where the two touch, just above health.</summary>
+    /// <param name="highAmps">Upper end of what a healthy unit shows.</param>
+    /// <param name="shortedAmps">What a shorted unit draws.</param>
+    public static double StopAbove(double highAmps, double shortedAmps) => Math.Sqrt(highAmps * Math.Max(shortedAmps, 1.05 * highAmps));
+}

@@ -22,8 +22,6 @@ public static class BankChooser
     // A short that draws so many times the unit's own current at full mains is hardly limited.
     private const double ThroughFactor = 12;
 
-    private const double LeastTellingContrast = 1.12;
-
     /// <summary>Ranks and plans.</summary>
     /// <param name="mains">The supply.</param>
     /// <param name="unit">What is to run.</param>
@@ -137,7 +135,7 @@ public static class BankChooser
         }
 
         var goal = choices[0];
-        var usable = choices.Where(choice => choice.Exists && choice.Contrast >= LeastTellingContrast && choice.ShortedAmps <= goal.ShortedAmps)
+        var usable = choices.Where(choice => choice.Exists && choice.Contrast >= BringUpAdvice.LeastContrast && choice.ShortedAmps <= goal.ShortedAmps)
             .OrderBy(choice => choice.ShortedAmps).ToArray();
         var last = 0.0;
         foreach (var choice in Ladder(usable, goal))
@@ -161,8 +159,7 @@ public static class BankChooser
                     ? Text($"The bank for the soak: {100 * choice.UnitVoltsShare:0} % of the voltage, contrast {choice.Contrast:0.0}.")
                     : Text($"More voltage ({100 * choice.UnitVoltsShare:0} %), a short still held to {choice.ShortedAmps:0.###} A.");
 
-            // Between the healthy band and a dead short, in ratios; where they touch, just above the band.
-            steps.Add(new BringUpAdvice(choice.Bank, low, high, Math.Sqrt(high * Math.Max(choice.ShortedAmps, 1.05 * high)), why));
+            steps.Add(new BringUpAdvice(choice.Bank, low, high, BringUpAdvice.StopAbove(high, choice.ShortedAmps), why));
         }
 
         return steps;

@@ -24,7 +24,7 @@ public sealed class UnattendedOptions
     [Range(1.0, 1440.0)]
     public double ResumeWithinMinutes { get; set; } = 60;
 
-    /// <summary>Address of an OpenTelemetry collector that takes metrics over OTLP (http/protobuf); null for none.</summary>
+    /// <summary>Address of an OpenTelemetry collector that takes metrics over OTLP (http/protobuf), such as http://127.0.0.1:4318; /v1/metrics is added where no path is given. Null for none.</summary>
     [Url]
     public string? OtlpUrl { get; set; }
 }

@@ -1,14 +1,15 @@
+using Lampwarden.Analysis.Choosing;
 using Lampwarden.Analysis.Lamps;
 using Lampwarden.Host.Configuration;
 
 namespace Lampwarden.Host.Soaking;
 
-/// <summary>Finds the steps by which a bank can be switched in lamp by lamp: the smallest part that carries the unit first.</summary>
+/// <summary>
+/// Finds the steps by which a bank can be switched in lamp by lamp: the smallest part that carries the unit first. It may only leave
+/// out lamps of the bank that stands there; which bank to make of the lamps on the shelf is <see cref="BankChooser"/>'s question.
+/// </summary>
 public static class BringUpPlanner
 {
-    // Below this, lamps and mains of a few percent off make health and a short look alike.
-    private const double LeastContrast = 1.2;
-
     /// <summary>The steps; the last is the whole bank. One step only where nothing can be left out.</summary>
     /// <param name="whole">The bench with its whole bank.</param>
     /// <param name="inventory">Lamps its bank text may name.</param>
@@ -32,7 +33,7 @@ public static class BringUpPlanner
         foreach (var (plan, added) in plans)
         {
             adds.Add(added ?? plan.Bank.Text);
-            if (ReferenceEquals(plan, whole) || (plan.Prediction.Steady.Exists && plan.Prediction.Contrast >= LeastContrast))
+            if (ReferenceEquals(plan, whole) || (plan.Prediction.Steady.Exists && plan.Prediction.Contrast >= BringUpAdvice.LeastContrast))
             {
                 steps.Add((plan, steps.Count == 0 ? plan.Bank.Text : string.Join(" and ", adds)));
                 adds.Clear();
@@ -50,8 +51,7 @@ public static class BringUpPlanner
             : index == count - 1
                 ? "The bank for the soak."
                 : $"A little more: a short could draw {Narration.Amps(shorted)}.";
-        // Midway between health and a dead short, in ratios.
-        return new BringUpStep(plan, adds, band.LowAmps, band.HighAmps, Math.Sqrt(band.HighAmps * Math.Max(shorted, band.HighAmps)), why);
+        return new BringUpStep(plan, adds, band.LowAmps, band.HighAmps, BringUpAdvice.StopAbove(band.HighAmps, shorted), why);
     }
 
     // The largest lamp that can be left out with a way for the current still there.

@@ -59,7 +59,7 @@ public sealed class Attendance : IAsyncDisposable
         _storeWarden = new StoreWarden(store, Dispatch, time);
         _reload = order.Path is null ? null : new SettingsReload(order.Path, order.Options, Dispatch, time, logger);
         _collector = unattended.OtlpUrl is { } url
-            ? Sdk.CreateMeterProviderBuilder().AddMeter(Telemetry.MeterName).AddOtlpExporter(otlp => (otlp.Endpoint, otlp.Protocol) = (new Uri(url), OtlpExportProtocol.HttpProtobuf)).Build()
+            ? Sdk.CreateMeterProviderBuilder().AddMeter(Telemetry.MeterName).AddOtlpExporter(otlp => (otlp.Endpoint, otlp.Protocol) = (Telemetry.CollectorPath(url), OtlpExportProtocol.HttpProtobuf)).Build()
             : null;
         Listeners = _cutOff is null ? [pulse, _telemetry] : [_cutOff, pulse, _telemetry];
     }

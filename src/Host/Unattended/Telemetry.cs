@@ -50,6 +50,9 @@ public sealed class Telemetry : ISoakListener, IDisposable
         _meter.CreateObservableGauge("lampwarden.route.up", () => dispatch.Health.Select(route => new Measurement<int>(route.State == RouteState.Down ? 0 : 1, Tag("route", route.Name))), "1", "0 while a route is down.");
     }
 
+    /// <summary>Where metrics are sent at a collector: the given path, or for a bare address the one of the OTLP specification.</summary>
+    public static Uri CollectorPath(string url) => new Uri(url) is var at && at.AbsolutePath == "/" ? new Uri(at, "/v1/metrics") : at;
+
     /// <inheritdoc/>
     public void Hear(SoakEvent happened)
     {

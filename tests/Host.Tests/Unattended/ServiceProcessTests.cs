@@ -1,3 +1,4 @@
+using System.Text;
 using System.Text.Json;
 using Lampwarden.Analysis.Watching;
 using Lampwarden.Host.Recording;
@@ -104,6 +105,23 @@ public sealed class ServiceProcessTests : IDisposable
         Assert.Single(store.Runs());
         var log = string.Concat(Directory.GetFiles(Path.Combine(_folder.Path, "log")).Select(File.ReadAllText));
         Assert.Contains("was read again", log, StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public async Task Watch_WithACollector_SendsItsFiguresOverOtlp()
+    {
+        await using var collector = new RawHttpServer(RawHttpServer.Status("200 OK"));
+        await using var rig = ServiceProcess.Rig();
+        await using var service = await ServiceProcess.StartAsync(_folder, rig, $$""", "unattended": { "otlpUrl": "{{collector.Url.GetLeftPart(UriPartial.Authority)}}" } """);
+        await ServiceProcess.AskedAsync(rig, 15);
+        await service.SignalAsync("TERM");
+
+        // What has not been sent yet is sent at the end. Strings stand in the protobuf message as they are.
+        var sent = collector.Requests[^1];
+        Assert.StartsWith("POST /v1/metrics ", sent.Head, StringComparison.Ordinal);
+        Assert.Equal("application/x-protobuf", sent.Header("Content-Type"));
+        var text = Encoding.Latin1.GetString(sent.Body);
+        Assert.All(["lampwarden.polls", "lampwarden.reading.handling", "lampwarden.store.accepted", "attic", "reading"], word => Assert.Contains(word, text, StringComparison.Ordinal));
     }
 
     private static async Task CheckHealthAsync(HttpClient client)

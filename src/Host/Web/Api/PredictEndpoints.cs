@@ -3,6 +3,7 @@ using Lampwarden.Analysis.Choosing;
 using Lampwarden.Analysis.Inference;
 using Lampwarden.Analysis.Lamps;
 using Lampwarden.Analysis.Prediction;
+using Lampwarden.Analysis.Uncertainty;
 using Lampwarden.Analysis.Units;
 using Lampwarden.Host.Commands;
 using Lampwarden.Host.Soaking;
@@ -14,7 +15,8 @@ namespace Lampwarden.Host.Web.Api;
 /// <summary>A prediction with its bank as a tree.</summary>
 /// <remarks>All but the tree is the document of <c>predict --json</c>.</remarks>
 public sealed record PredictDocument(
-    Mains Mains, BankSummary Bank, BankTree BankTree, UnitSummary Unit, SteadyState Steady, Inrush Inrush, ShortedState Shorted, CurrentBand Band, double Contrast);
+    Mains Mains, BankSummary Bank, BankTree BankTree, UnitSummary Unit, SteadyState Steady, Inrush Inrush, ShortedState Shorted, CurrentBand Band, double Contrast,
+    IReadOnlyList<string> Notes, IReadOnlyDictionary<string, Interval> Intervals);
 
 /// <summary>The document of <c>choose --json</c>, with the lamps of each bank.</summary>
 public sealed record ChooseDocument(IReadOnlyList<ChoiceDocument> Choices, IReadOnlyList<BringUpAdvice> BringUp, int Considered, IReadOnlyList<string> Notes);
@@ -73,7 +75,8 @@ internal static class PredictEndpoints
         var lamps = Bank.Parse(bank, supply, inventory);
         var predicted = Predictor.Predict(supply, lamps, Unit.Parse(unit, supply), new PredictionSettings { MeterWindowSeconds = meterWindow });
         return TypedResults.Ok(new PredictDocument(
-            predicted.Mains, predicted.Bank, BankTree.Of(lamps), predicted.Unit, predicted.Steady, predicted.Inrush, predicted.Shorted, predicted.Band, predicted.Contrast));
+            predicted.Mains, predicted.Bank, BankTree.Of(lamps), predicted.Unit, predicted.Steady, predicted.Inrush, predicted.Shorted, predicted.Band, predicted.Contrast,
+            predicted.Notes, predicted.Intervals));
     }
 
     private static Ok<ChooseDocument> Choose(
