@@ -131,6 +131,22 @@ public sealed class MeterTroubleTests
     }
 
     [Fact]
+    public async Task ReadAsync_NulsInAStatusAnswer_AreGotOver()
+    {
+        // "0" and its line end: the shortest line there is.
+        await using var bench = new TestBench(TestBench.NewTerminal(), session: options => options.Protocol.StatusSeconds = 0.001);
+        await bench.NextAsync();
+        bench.Meter.Begin(MeterTrouble.Nuls);
+        for (var poll = 0; poll < 20; poll++)
+        {
+            await bench.NextAsync();
+        }
+
+        bench.Meter.End(MeterTrouble.Nuls);
+        await bench.UntilAsync(one => one.Value == Truth);
+    }
+
+    [Fact]
     public async Task ReadAsync_AMegabyteWithoutLineEnd_IsThrownAwayInBoundedMemory()
     {
         await using var bench = new TestBench(TestBench.NewTerminal(), session: options => options.ReplyTimeoutSeconds = 0.1);

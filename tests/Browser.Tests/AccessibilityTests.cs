@@ -27,7 +27,7 @@ public sealed class AccessibilityTests(BrowserFixture browser)
         (string Hash, string Wait)[] views =
         [
             ("#/benches", ".tile"), ("#/bench/attic", ".u-over"), ("#/bench/cellar", ".u-over"), ("#/start", ".outlook-board"), 
-            ("#/runs", "tbody tr"), ($"#/run/{run}", ".u-over"), ($"#/run/{run}/{other}", ".u-over"), ("#/meters", "h1"),
+            ("#/runs", "tbody tr"), ($"#/run/{run}", ".u-over"), ($"#/run/{run}/{other}", ".u-over"), ("#/meters", "h1"), ("#/watcher", "h1"),
         ];
         var faults = new List<string>();
         foreach (var (hash, wait) in views)

@@ -44,7 +44,7 @@ public static class SoakHost
         using var forwarder = influx is null ? null : new InfluxForwarder(store, influx, TimeProvider.System);
         using var log = new Serilog.Extensions.Logging.SerilogLoggerFactory(MakeLog(recordFolder, logToConsole), dispose: true);
         var logger = log.CreateLogger("Lampwarden");
-        await using var attendance = attended is null ? null : new Attendance(attended, [.. plans.Select(plan => plan.Name)], recordFolder, () => store.Health, logger);
+        await using var attendance = attended is null ? null : new Attendance(attended, [.. plans.Select(plan => plan.Name)], recordFolder, () => store.Health, forwarder is null ? null : () => forwarder.Health, logger);
         var listenersAndOurs = (IReadOnlyList<ISoakListener>)[.. attendance?.Listeners ?? [], .. listeners];
         await using var board = page is null ? null : new LiveBoard(plans);
         var builder = Microsoft.Extensions.Hosting.Host.CreateEmptyApplicationBuilder(new HostApplicationBuilderSettings { ContentRootPath = AppContext.BaseDirectory });

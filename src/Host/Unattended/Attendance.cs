@@ -5,6 +5,7 @@ using Lampwarden.Host.Alerting.Life;
 using Lampwarden.Host.Alerting.Routes;
 using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Recording;
+using Lampwarden.Host.Recording.Forwarding;
 using Lampwarden.Host.Soaking;
 using OpenTelemetry;
 using OpenTelemetry.Exporter;
@@ -37,9 +38,10 @@ public sealed class Attendance : IAsyncDisposable
     /// <param name="benches">Names of the benches.</param>
     /// <param name="recordFolder">Where the store lies.</param>
     /// <param name="store">The store's health.</param>
+    /// <param name="forwarding">That of forwarding to a server; null where nothing is forwarded.</param>
     /// <param name="logger">For structured events.</param>
     /// <exception cref="ConfigurationException">A secret is named but not there.</exception>
-    public Attendance(AttendanceOrder order, IReadOnlyList<string> benches, string recordFolder, Func<StoreHealth> store, ILogger logger)
+    public Attendance(AttendanceOrder order, IReadOnlyList<string> benches, string recordFolder, Func<StoreHealth> store, Func<ForwardingHealth>? forwarding, ILogger logger)
     {
         // Life's clock even in a rehearsal: people, brokers and service managers do not run faster.
         var time = TimeProvider.System;
@@ -54,7 +56,7 @@ public sealed class Attendance : IAsyncDisposable
         _cutOff = alerts.CutOff is { Outputs.Count: > 0 } options
             ? new CutOffGuard(options, instance, recordFolder, Dispatch, pulse, unattended.StuckAfterSeconds, time, logger)
             : null;
-        Health = new HealthBoard(instance, benches, pulse, unattended.StuckAfterSeconds, store, Dispatch, _cutOff, time);
+        Health = new HealthBoard(instance, benches, pulse, unattended.StuckAfterSeconds, store, forwarding, Dispatch, _cutOff, time);
         _heart = new Heart(unattended, pulse, Dispatch, _manager, time, logger);
         _storeWarden = new StoreWarden(store, Dispatch, time);
         _reload = order.Path is null ? null : new SettingsReload(order.Path, order.Options, Dispatch, time, logger);

@@ -42,7 +42,7 @@ public sealed class PageServer : IAsyncDisposable
         builder.Services.ConfigureHttpJsonOptions(options => CopyTo(options.SerializerOptions));
         builder.Services.AddOpenApi(OpenApiText.Configure);
         builder.Services.AddSingleton(parts.Board).AddSingleton(parts.Store).AddSingleton(inventory).AddSingleton(new Desks(parts.Desks))
-            .AddSingleton(new Watcher(parts.Attendance?.Dispatch));
+            .AddSingleton(new Watcher(parts.Attendance?.Dispatch, parts.Attendance?.Health));
         builder.Services.AddSingleton(new AccessRules(address, new WrongTokens(time ?? TimeProvider.System), time ?? TimeProvider.System));
         builder.Services.Configure<HostOptions>(options => options.ShutdownTimeout = TimeSpan.FromSeconds(5));
         var application = builder.Build();

@@ -131,6 +131,8 @@ public sealed class ServiceProcessTests : IDisposable
         Assert.InRange(health.GetProperty("benches")[0].GetProperty("silentSeconds").GetDouble(), 0, 20);
         var store = health.GetProperty("store");
         Assert.Equal(store.GetProperty("accepted").GetInt64(), store.GetProperty("stored").GetInt64() + store.GetProperty("waiting").GetInt64());
+        var watcher = JsonDocument.Parse(await client.GetStringAsync(new Uri("/api/watcher", UriKind.Relative), TestContext.Current.CancellationToken)).RootElement;
+        Assert.Equal(("ok", health.GetProperty("instance").GetString()), (watcher.GetProperty("status").GetString(), watcher.GetProperty("instance").GetString()));
         var metrics = await client.GetStringAsync(new Uri("/metrics", UriKind.Relative), TestContext.Current.CancellationToken);
         Assert.Contains("lampwarden_polls_total{bench=\"attic\",result=\"reading\"}", metrics, StringComparison.Ordinal);
     }

@@ -107,7 +107,8 @@ internal sealed class Mouth : IDisposable
 
             if (_troubles.Contains(MeterTrouble.Nuls))
             {
-                bytes = _lines % 2 == 0 ? [0, 0, .. bytes] : [.. bytes[..3], 0, .. bytes[3..]];
+                var inside = Math.Min(3, bytes.Length - 1);
+                bytes = _lines % 2 == 0 ? [0, 0, .. bytes] : [.. bytes[..inside], 0, .. bytes[inside..]];
             }
 
             if (_troubles.Contains(MeterTrouble.Glued))

@@ -14,6 +14,7 @@ import { chooseView } from "./views/choose.js";
 import { runsView } from "./views/runs.js";
 import { runView } from "./views/run.js";
 import { metersView } from "./views/meters.js";
+import { watcherView } from "./views/watcher.js";
 import { tokenView } from "./views/token.js";
 
 const state = empty();
@@ -35,6 +36,7 @@ const ROUTES = {
   runs: () => runsView(),
   run: (run, also) => runView({ run, also }),
   meters: () => metersView(),
+  watcher: () => watcherView(),
 };
 
 const stream = new Stream({
@@ -84,6 +86,10 @@ function show() {
     const own = item.getAttribute("href").split("/")[1];
     const here = own === route || (own === "" && ["bench", "benches"].includes(route)) || (own === "runs" && route === "run");
     attribute(item, "aria-current", here ? "page" : null);
+    if (here) {
+      // On a narrow screen the row of names is longer than the screen.
+      item.scrollIntoView({ block: "nearest", inline: "nearest" });
+    }
   }
 
   if (!locked) {
@@ -143,6 +149,6 @@ addEventListener("hashchange", () => {
 main.replaceChildren(h("p", {}, "Asking the host…"));
 stream.follow(null);
 watchTheWatcher(document.getElementById("watcher"));
-if (["#/choose", "#/runs", "#/meters"].some((route) => location.hash.startsWith(route)) || location.hash.startsWith("#/run/")) {
+if (["#/choose", "#/runs", "#/meters", "#/watcher"].some((route) => location.hash.startsWith(route)) || location.hash.startsWith("#/run/")) {
   show();
 }

@@ -9,7 +9,7 @@ import { gapWord } from "../model/words.js";
 const QUANTITIES = { "line-current": "line current", "mains-voltage": "mains", lineCurrent: "line current", mainsVoltage: "mains" };
 
 export function metersView() {
-  const body = h("div", { class: "meters" });
+  const body = h("div", { class: "cards" });
   const node = h("div", { class: "stack" }, h("h1", {}, "Meters"), body);
   let open = true;
   let drawn = "";
