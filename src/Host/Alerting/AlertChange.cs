@@ -49,6 +49,9 @@ public static class AlertSteps
     /// <summary>Its run had ended, and now the bench's next soak begins.</summary>
     public const string Closed = "closed";
 
+    /// <summary>It was open when the service was left off, and the service is back. Told to whoever keeps the state of a bench.</summary>
+    public const string CarriedOn = "carried-on";
+
     /// <summary>It is told again because nobody acknowledged it.</summary>
     public const string Repeated = "repeated";
 

@@ -110,6 +110,17 @@ public sealed partial class AlertDispatch : IAlertRoute, IAsyncDisposable
     {
         var alert = change.Alert;
         var key = (route.Name, alert.Bench, alert.Number);
+        if (change.What == AlertSteps.CarriedOn)
+        {
+            // Whoever was told by the service before hears from this one how it goes on.
+            if (alert.Severity >= route.Settings.Minimum && alert.Repeats >= route.Settings.AfterRepeats)
+            {
+                _told.Add(key);
+            }
+
+            return !route.Settings.Groups;
+        }
+
         var news = change.What is AlertSteps.Raised or AlertSteps.Amended or AlertSteps.Repeated or AlertSteps.Unshelved;
         if (!news)
         {

@@ -219,6 +219,11 @@ public sealed class Soak
 
         Log.SoakStarted(_around.Logger, _plan.Name, recorder.Run, _plan.Unit.Text, _plan.Bank.Text, _plan.Mains.ToString());
         Tell(new RunBegan(_plan.Name, recorder.Run, _bringUp?.Plan ?? _plan, look.Utc));
+        if (_resumption is not null)
+        {
+            TellWhatStands();
+        }
+
         if (_bringUp is not null)
         {
             if (_resumption is null)
@@ -230,6 +235,20 @@ public sealed class Soak
         }
 
         return true;
+    }
+
+    /// <summary>Page, routes and cut-off have been told nothing yet of what was found before the service was left off.</summary>
+    private void TellWhatStands()
+    {
+        foreach (var finding in _ledger.Watch.Findings.Where(finding => finding.ClearedSeconds is null))
+        {
+            Tell(new FindingChanged(_plan.Name, _ledger.LastSeconds, new FindingChange(ChangeKind.Amended, finding)));
+        }
+
+        foreach (var alert in _alerts.Alerts.Where(alert => alert.IsOpen))
+        {
+            Publish(new AlertChange(_ledger.LastSeconds, AlertSteps.CarriedOn, alert));
+        }
     }
 
     /// <summary>Sets the clock and the watch to where the earlier run was left off.</summary>

@@ -49,6 +49,19 @@ public sealed class AlertDispatchTests : IDisposable
     }
 
     [Fact]
+    public async Task Tell_CarriedOn_IsNewsOnlyToWhoeverKeepsTheState()
+    {
+        var (people, state, critical) = (ScriptedRoute.Working("people"), ScriptedRoute.Working("state"), ScriptedRoute.Working("critical"));
+        await using var dispatch = Make((people, new RouteSettings()), (state, new RouteSettings { Groups = false }), (critical, new RouteSettings { Minimum = Severity.Critical }));
+        await TellAsync(dispatch, Told.Change(1, Severity.Warning, what: AlertSteps.CarriedOn));
+        await TellAsync(dispatch, Told.Change(1, Severity.Warning, what: AlertSteps.Returned, state: AlertState.Normal));
+        await Patience.UntilAsync(() => people.Told.Count == 1 && state.Told.Count == 2);
+        Assert.Equal(AlertSteps.Returned, people.Told[0].What);
+        await Patience.SettleAsync();
+        Assert.Empty(critical.Told);
+    }
+
+    [Fact]
     public async Task Tell_HowAnAlertGoesOn_ReachesOnlyThoseWhoHeardOfIt()
     {
         var (heard, later) = (ScriptedRoute.Working("heard"), ScriptedRoute.Working("later"));
