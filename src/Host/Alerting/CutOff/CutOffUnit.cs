@@ -14,15 +14,14 @@ public sealed record CutOffSurroundings(Func<double?> SilentSeconds, double Stuc
 /// The cut-off of one bench: trips on the findings it was given, stays tripped until a person resets it, and never lets a
 /// contactor close by itself. A convenience, no protective device.
 /// </summary>
-public sealed class CutOffUnit : IAsyncDisposable
+public sealed partial class CutOffUnit : IAsyncDisposable
 {
-    private static readonly TimeSpan SendDeadline = TimeSpan.FromSeconds(2);
     private static readonly TimeSpan LongestPause = TimeSpan.FromSeconds(5);
 
     private readonly Lock _gate = new();
     private readonly CutOffOptions _options;
     private readonly CutOffOutputOptions _wire;
-    private readonly ICutOffOutput? _output;
+    private readonly CutOffSender _sender;
     private readonly CutOffFile _file;
     private readonly CutOffSurroundings _around;
     private readonly TimeProvider _time;
@@ -33,13 +32,13 @@ public sealed class CutOffUnit : IAsyncDisposable
     private readonly Task _loop;
     private CutOffState _state;
     private bool _openSent;
-    private bool _unreachable;
 
     /// <summary>Takes up the state it was left in, and starts.</summary>
     /// <param name="output">The wire; null in a dry run.</param>
     public CutOffUnit(CutOffOptions options, CutOffOutputOptions wire, ICutOffOutput? output, CutOffFile file, CutOffSurroundings around, TimeProvider time, ILogger logger)
     {
-        (_options, _wire, _output, _file, _around, _time, _logger) = (options, wire, output, file, around, time, logger);
+        (_options, _wire, _file, _around, _time, _logger) = (options, wire, file, around, time, logger);
+        _sender = new CutOffSender(options.DryRun ? null : output, wire.Bench, around, logger);
         _state = TakeUp();
         // What was open before the start is opened once more: the contactor may have been closed by hand meanwhile.
         _loop = Task.Run(() => RunAsync(_stop.Token));
@@ -89,42 +88,12 @@ public sealed class CutOffUnit : IAsyncDisposable
         }
     }
 
-    /// <summary>A person resets it after looking.</summary>
-    /// <returns>Null: it is armed again. Otherwise why not.</returns>
-    public string? Reset(string by)
-    {
-        lock (_gate)
-        {
-            if (_state.Position == CutOffPosition.Armed)
-            {
-                return "it is armed";
-            }
-
-            if (_standing.Count > 0)
-            {
-                return $"the finding still stands: {_standing.Values.First().Finding.Signature.Text()}";
-            }
-
-            Become(new CutOffState(CutOffPosition.Armed, _time.GetUtcNow(), $"reset by {by}"), new { utc = _time.GetUtcNow(), bench = Bench, what = "reset", by });
-            _openSent = false;
-            _around.Clear(AlertCauses.CutOff, Subject);
-        }
-
-        Log.CutOffReset(_logger, Bench, by);
-        _wake.Release();
-        return null;
-    }
-
     /// <summary>Stops. A contactor that needs keep-alives opens by itself afterwards.</summary>
     public async ValueTask DisposeAsync()
     {
         await _stop.CancelAsync();
         await _loop;
-        if (_output is not null)
-        {
-            await _output.DisposeAsync();
-        }
-
+        await _sender.DisposeAsync();
         _wake.Dispose();
         _stop.Dispose();
     }
@@ -217,7 +186,7 @@ public sealed class CutOffUnit : IAsyncDisposable
 
         if (position == CutOffPosition.Tripped && !_openSent)
         {
-            _openSent = _wire.OpenText.Length == 0 || await TrySendAsync(_wire.OpenText, _wire.OpenAnswer, stop);
+            _openSent = _wire.OpenText.Length == 0 || await _sender.TrySendAsync(_wire.OpenText, _wire.OpenAnswer, Severity.Critical, stop);
             return _openSent ? LongestPause : TimeSpan.FromSeconds(0.5);
         }
 
@@ -239,7 +208,7 @@ public sealed class CutOffUnit : IAsyncDisposable
         }
 
         // A loop that handles no readings does not hold a contactor closed, and nor does a soak that is over.
-        if (_around.SilentSeconds() < _around.StuckAfterSeconds && await TrySendAsync(text, null, stop))
+        if (_around.SilentSeconds() < _around.StuckAfterSeconds && await _sender.TrySendAsync(text, null, Severity.Warning, stop))
         {
             lock (_gate)
             {
@@ -249,64 +218,6 @@ public sealed class CutOffUnit : IAsyncDisposable
                     Store(() => _file.Save(_state));
                 }
             }
-        }
-    }
-
-    private async Task<bool> TrySendAsync(string text, string? answer, CancellationToken stop)
-    {
-        if (_options.DryRun || _output is null)
-        {
-            return true;
-        }
-
-        using var deadline = CancellationTokenSource.CreateLinkedTokenSource(stop);
-        deadline.CancelAfter(SendDeadline);
-        try
-        {
-            await _output.SendAsync(Unescape(text), answer, deadline.Token).WaitAsync(deadline.Token);
-            if (_unreachable)
-            {
-                _unreachable = false;
-                _around.Clear(AlertCauses.CutOffDown, Subject);
-            }
-
-            return true;
-        }
-        catch (Exception error) when (error is IOException || (error is OperationCanceledException && !stop.IsCancellationRequested))
-        {
-            if (!_unreachable)
-            {
-                _unreachable = true;
-                Log.CutOffUnreachable(_logger, error, Bench, _output.Place);
-                _around.Raise(AlertCauses.CutOffDown, State.Position == CutOffPosition.Tripped ? Severity.Critical : Severity.Warning,
-                    $"{Subject}: the cut-off at {_output.Place} does not answer ({error.Message}). It is tried again, without end.");
-            }
-
-            return false;
-        }
-    }
-
-    private void TakeResetWish()
-    {
-        if (!File.Exists(_file.ResetPath))
-        {
-            return;
-        }
-
-        try
-        {
-            var by = File.ReadAllText(_file.ResetPath).Trim();
-            if (Reset(by.Length == 0 ? "somebody" : by) is { } why)
-            {
-                Log.CutOffNotReset(_logger, Bench, why);
-            }
-
-            // Last: whoever waits for it to go finds the new state.
-            File.Delete(_file.ResetPath);
-        }
-        catch (Exception error) when (error is IOException or UnauthorizedAccessException)
-        {
-            Log.CutOffNotReset(_logger, Bench, error.Message);
         }
     }
 
@@ -346,6 +257,4 @@ public sealed class CutOffUnit : IAsyncDisposable
         await either.CancelAsync();
         stop.ThrowIfCancellationRequested();
     }
-
-    private static string Unescape(string text) => text.Replace("\\n", "\n").Replace("\\r", "\r").Replace("\\t", "\t");
 }
