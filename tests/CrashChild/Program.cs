@@ -4,8 +4,16 @@
 //   interrupted N     so many runs were closed by this opening
 //   read N MS         reading N was appended, at MS milliseconds of the system's clock
 //   told N            alert change N is on disk: anybody may be told of it now
+// With the words 'hang CONFIG FOLDER READINGS' it is the service instead, and hangs after so many readings.
 using System.Globalization;
+using Lampwarden.CrashChild;
 using Lampwarden.Host.Recording;
+
+if (args is ["hang", var config, var folder, var readings])
+{
+    await HangingService.RunAsync(config, folder, readings);
+    return;
+}
 
 using var store = SoakStore.Open(args[0], TimeProvider.System);
 var output = Console.Out;

@@ -22,12 +22,30 @@ internal sealed class ServiceProcess : IAsyncDisposable
     /// <summary>Starts <c>watch</c> with more configuration and environment.</summary>
     public static async Task<ServiceProcess> StartAsync(TempFolder folder, SimulatedRig rig, string more = "", string[]? words = null, params (string Name, string Value)[] environment)
     {
+        var config = await WriteConfigAsync(folder, rig, more);
+        return Start([Path.Combine(AppContext.BaseDirectory, "lampwarden.dll"), "watch", "--config", config, "--record", folder.Path, .. words ?? ["--no-page"]], environment);
+    }
+
+    /// <summary>Starts the service with a loop that hangs after so many readings.</summary>
+    public static async Task<ServiceProcess> StartHangingAsync(TempFolder folder, SimulatedRig rig, int readings, string more) => Start(
+        [Path.Combine(AppContext.BaseDirectory, "Lampwarden.CrashChild.dll"), "hang", await WriteConfigAsync(folder, rig, more), folder.Path, readings.ToString(CultureInfo.InvariantCulture)], []);
+
+    /// <summary>Waits for it to end by itself.</summary>
+    public Task EndedAsync() => _process.WaitForExitAsync(TestContext.Current.CancellationToken);
+
+    private static async Task<string> WriteConfigAsync(TempFolder folder, SimulatedRig rig, string more)
+    {
         var config = Path.Combine(folder.Path, "bench.json");
         await File.WriteAllTextAsync(config, $$"""
             { "benches": [ { "name": "attic", "mains": "230 V 50 Hz", "bank": "150 W", "unit": "resistor 900 ohm",
                 "meters": [ { "name": "line", "transport": { "port": "{{rig.Meters[0].Place}}" }, "readingsPerSecond": 10 } ] } ]{{more}} }
             """, TestContext.Current.CancellationToken);
-        var start = new ProcessStartInfo("dotnet", [Path.Combine(AppContext.BaseDirectory, "lampwarden.dll"), "watch", "--config", config, "--record", folder.Path, .. words ?? ["--no-page"]])
+        return config;
+    }
+
+    private static ServiceProcess Start(string[] words, (string Name, string Value)[] environment)
+    {
+        var start = new ProcessStartInfo("dotnet", words)
         {
             RedirectStandardOutput = true,
             RedirectStandardError = true,

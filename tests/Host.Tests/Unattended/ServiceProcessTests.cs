@@ -110,6 +110,32 @@ public sealed class ServiceProcessTests : IDisposable
     }
 
     [Fact]
+    public async Task Watch_WithALoopThatHangs_SaysSoEndsItselfAndIsTakenUpAgain()
+    {
+        await using var hook = new RawHttpServer(RawHttpServer.Status("204 No Content"));
+        await using var rig = ServiceProcess.Rig();
+        var more = $$""", "unattended": { "stuckAfterSeconds": 5 }, "alerts": { "routes": [ { "kind": "webhook", "webhook": { "url": "{{hook.Url}}" } } ] } """;
+        await using (var hanging = await ServiceProcess.StartHangingAsync(_folder, rig, readings: 30, more))
+        {
+            await hanging.EndedAsync();
+            Assert.NotEqual(0, hanging.ExitCode);
+        }
+
+        Assert.Contains(hook.Requests, request => Encoding.UTF8.GetString(request.Body).Contains("\"cause\":\"loop-stuck\"", StringComparison.Ordinal));
+
+        // What a service manager does then.
+        var asked = rig.Asked;
+        await using var service = await ServiceProcess.StartAsync(_folder, rig, more, ["--no-page", "--resume"]);
+        await ServiceProcess.AskedAsync(rig, asked + 20);
+        await service.SignalAsync("TERM");
+        using var store = SoakStore.Open(_folder.Path, TimeProvider.System, StoreMode.Review);
+        var runs = store.Runs().OrderBy(run => run.Run, StringComparer.Ordinal).ToList();
+        Assert.Equal((2, runs[0].Run), (runs.Count, runs[1].ResumedFrom));
+        Assert.Equal("service-down", store.Run(runs[1].Run).Gaps[0].Reason);
+        Assert.InRange(runs[0].Readings, 25, 40);
+    }
+
+    [Fact]
     public async Task Watch_WithACollector_SendsItsFiguresOverOtlp()
     {
         await using var collector = new RawHttpServer(RawHttpServer.Status("200 OK"));
