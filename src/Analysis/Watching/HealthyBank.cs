@@ -41,18 +41,18 @@ internal sealed class HealthyBank
     }
 
     /// <summary>Carries all models over a time step and weighs the next block; <paramref name="weigh"/> sees the lead between comparing and learning.</summary>
-    public void Compare(double step, double log, double mains, double noise)
+    public void Compare(double step, double log, double mains, double noise, double mainsNoise)
     {
         for (var i = 0; i < (chosen ? Ambients.Length : models.Length); i++)
         {
             var model = models[i];
             model.Advance(step);
-            model.Compare(log, mains, noise);
+            model.Compare(log, mains, noise, mainsNoise);
             var tension = Math.Abs(model.Surprise) / Math.Sqrt(model.SurpriseVariance);
             if (tension > HuberLimit)
             {
                 // Huber: a surprise beyond the limit counts as one at the limit.
-                model.Compare(log, mains, noise + (model.SurpriseVariance * ((tension / HuberLimit) - 1)));
+                model.Compare(log, mains, noise + (model.SurpriseVariance * ((tension / HuberLimit) - 1)), mainsNoise);
             }
         }
     }
@@ -82,6 +82,8 @@ internal sealed class HealthyBank
 
         return lead != old;
     }
+
+    public void DoubtExponent(double sd) => Array.ForEach(models, model => model.DoubtExponent(sd));
 
     public void ShiftLevel(double by)
     {

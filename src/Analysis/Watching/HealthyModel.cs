@@ -17,6 +17,7 @@ internal sealed class HealthyModel
     private readonly double[] x = new double[Size];
     private readonly double[] p = new double[Size * Size];
     private readonly double[] gain = new double[Size];
+    private readonly double[] taken = new double[Size]; // by the noise of the measured mains
     private readonly double[] transition = new double[Size]; // the diagonal; the one off-diagonal term stands beside it
     private readonly bool mainsMeasured;
     private double warmByLogTau;
@@ -79,6 +80,9 @@ internal sealed class HealthyModel
         x[Level] += by;
         p[0] += sd * sd;
     }
+
+    /// <summary>Says that the exponent may be off by so much here: it was learned from small moves of the mains, and holds near them.</summary>
+    public void DoubtExponent(double sd) => p[(Mains * Size) + Mains] = Math.Max(p[(Mains * Size) + Mains], sd * sd);
 
     /// <summary>What the healthy unit should show now, ln A.</summary>
     public double Foretell(double mains) => x[Level] + x[Warm] + x[SlowWarm] + x[Ambient] + (mainsMeasured ? x[Mains] * mains : x[Mains]);
@@ -147,9 +151,14 @@ internal sealed class HealthyModel
     }
 
     /// <summary>Compares with a block: sets the surprise and its variance.</summary>
-    public void Compare(double value, double mains, double noiseVariance)
+    /// <param name="mainsVariance">
+    /// Of the measured mains. A regressor with noise of its own makes an exponent learned from it too small (errors in variables);
+    /// what the noise takes away on average at each step is given back when the block is learned.
+    /// </param>
+    public void Compare(double value, double mains, double noiseVariance, double mainsVariance)
     {
         Surprise = value - Foretell(mains);
+        noiseVariance += mainsMeasured ? x[Mains] * x[Mains] * mainsVariance : 0;
         var variance = noiseVariance;
         for (var i = 0; i < Size; i++)
         {
@@ -167,6 +176,7 @@ internal sealed class HealthyModel
         for (var i = 0; i < Size; i++)
         {
             gain[i] /= variance;
+            taken[i] = mainsMeasured ? p[(i * Size) + Mains] * x[Mains] * mainsVariance / variance : 0;
         }
     }
 
@@ -175,7 +185,7 @@ internal sealed class HealthyModel
     {
         for (var i = 0; i < Size; i++)
         {
-            x[i] += gain[i] * Surprise;
+            x[i] += (gain[i] * Surprise) + taken[i];
             for (var j = 0; j <= i; j++)
             {
                 var lessened = p[(i * Size) + j] - (gain[i] * gain[j] * SurpriseVariance);
@@ -232,6 +242,7 @@ internal sealed class HealthyModel
         state.Fields(x);
         state.Fields(p);
         state.Fields(gain);
+        state.Fields(taken);
         state.Fields(transition);
         state.Field(ref warmByLogTau);
         state.Field(ref ambientSd);

@@ -4,12 +4,28 @@ namespace Lampwarden.Analysis.Watching;
 internal sealed class MainsView(double nominalVolts)
 {
     private const double ShortSeconds = 30, LongSeconds = 300, UnrestSeconds = 3;
+    private const double NewMainsSeconds = 600;
+    private const double JumpShare = 0.03;
+
+    private const double LeastReadings = 20, MostReadings = 2000, ClipSds = 4;
+
+    // Of white noise (variance n) on a random walk (q a step), first differences have 2n + q, second ones 6n + 2q: what they tell apart is n.
+    // A little less of it is believed than is seen, because giving back too much would feed on itself.
+    private const double Believed = 0.9;
 
     private double shortMean = double.NaN;
     private double longMean;
     private double lastSeconds;
     private int awayInARow;
     private double awaySince = double.NaN;
+    private bool jumpedBefore;
+    private double previous = double.NaN;
+    private double beforePrevious = double.NaN;
+    private double firstSquares;
+    private double secondSquares;
+    private double heard;
+    private double held = 1;
+    private double sinceHeard;
 
     /// <summary>ln(V / nominal) of the last reading.</summary>
     public double Now { get; private set; }
@@ -23,15 +39,31 @@ internal sealed class MainsView(double nominalVolts)
     /// <summary>Departure from the mean of some minutes: what a dip or a swell is measured by.</summary>
     public double Departure => Now - longMean;
 
+    /// <summary>
+    /// The mains has just jumped: the two meters do not read at one instant, so this reading of the current may belong to another mains.
+    /// </summary>
+    public bool Jumped { get; private set; }
+
+    /// <summary>
+    /// Variance of the mains meter's own noise for each reading of the line meter, relative: several of those may share one of the mains.
+    /// 0 until known.
+    /// </summary>
+    public double NoiseVariance => heard < LeastReadings ? 0 : Believed * Math.Max(0, (secondSquares / 2) - firstSquares) * held;
+
     /// <summary>Readings in a row for which the mains has stood away by more than a dip's share.</summary>
     public int AwayInARow => awayInARow;
 
     public void Observe(double seconds, double volts, double pole)
     {
+        var before = Now;
         if (volts > 0 && double.IsFinite(volts))
         {
             Now = Math.Log(volts / nominalVolts);
+            LearnNoise();
         }
+
+        var jumps = !double.IsNaN(shortMean) && Math.Abs(Now - before) > JumpShare;
+        (Jumped, jumpedBefore) = (jumps || jumpedBefore, jumps);
 
         if (double.IsNaN(shortMean))
         {
@@ -48,10 +80,42 @@ internal sealed class MainsView(double nominalVolts)
         awaySince = !away ? double.NaN : double.IsNaN(awaySince) ? seconds : awaySince;
 
         // A dip must not become the measure of itself; after ten minutes it is no dip but a new mains.
-        if (!away || seconds - awaySince > 600)
+        if (!away)
         {
             longMean += (Now - longMean) * (1 - Math.Exp(-dt / LongSeconds));
         }
+        else if (seconds - awaySince > NewMainsSeconds)
+        {
+            (longMean, awayInARow, awaySince) = (shortMean, 0, double.NaN);
+        }
+    }
+
+    private void LearnNoise()
+    {
+        sinceHeard++;
+        if (Now == previous)
+        {
+            return; // the same reading, given with another of the current
+        }
+
+        var share = 1 / Math.Min(heard + 1, MostReadings);
+        held += (sinceHeard - held) * share;
+        sinceHeard = 0;
+        if (!double.IsNaN(beforePrevious))
+        {
+            Average(ref firstSquares, Now - previous, share);
+            Average(ref secondSquares, Now - (2 * previous) + beforePrevious, share);
+            heard++;
+        }
+
+        (beforePrevious, previous) = (previous, Now);
+    }
+
+    private void Average(ref double squares, double difference, double share)
+    {
+        // A step of the mains is no noise of its meter.
+        var square = difference * difference;
+        squares += ((heard < LeastReadings ? square : Math.Min(square, ClipSds * ClipSds * squares)) - squares) * share;
     }
 
     public void Transfer(StateStream state)
@@ -61,6 +125,17 @@ internal sealed class MainsView(double nominalVolts)
         state.Field(ref lastSeconds);
         state.Field(ref awayInARow);
         state.Field(ref awaySince);
+        state.Field(ref previous);
+        state.Field(ref beforePrevious);
+        state.Field(ref firstSquares);
+        state.Field(ref secondSquares);
+        state.Field(ref heard);
+        state.Field(ref held);
+        state.Field(ref sinceHeard);
+        state.Field(ref jumpedBefore);
+        var jumped = Jumped;
+        state.Field(ref jumped);
+        Jumped = jumped;
         var (now, filtered, unrest) = (Now, Filtered, Unrest);
         state.Field(ref now);
         state.Field(ref filtered);

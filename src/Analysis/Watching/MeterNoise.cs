@@ -13,9 +13,13 @@ internal sealed class MeterNoise(double readingsPerSecond)
     private const double FirstSd = 0.005;
     private const double MostPole = 0.8;
 
+    // A meter's filter forgets within seconds (assumed): what scatters together for longer is the bench or the mains, not the meter.
+    private const double SlowestFilterSeconds = 2.5;
+
     // Coarse counts stick to one code for a while, which looks like a filter: beyond this share of the variance the pole is not to be relied on.
     private const double CoarseShare = 0.25;
 
+    private readonly double mostPole = Math.Min(MostPole, Math.Exp(-1 / (readingsPerSecond * SlowestFilterSeconds)));
     private double slow;
     private double previous = double.NaN;
     private double variance = FirstSd * FirstSd;
@@ -80,7 +84,7 @@ internal sealed class MeterNoise(double readingsPerSecond)
         var smooth = Math.Max(variance - rounding, 0.1 * variance);
         var doubt = 1 / Math.Sqrt(count);
         var pole = covariance / smooth;
-        Pole = pole < 3 * doubt ? 0 : Math.Min(pole, MostPole);
+        Pole = pole < 3 * doubt ? 0 : Math.Min(pole, mostPole);
         var white = smooth * (1 + Pole) / (1 - Pole);
 
         // Undoing the filter spreads the rounding over two readings and magnifies it.

@@ -12,6 +12,13 @@ internal sealed class SlowChannel
     private const double YoungExtra = 4;
     private const double LearningExcess = 0.03;
 
+    // How far the exponent far off may lie from what small moves of the mains have taught (assumed).
+    private const double FarExponentSd = 0.15;
+
+    // Beyond this noise of a block's mains the exponent's bias cannot be made good: giving back what the noise takes would feed on itself.
+    private const double MostMainsNoise = 9e-4;
+    private const double BlindExponentSd = 0.5;
+
     private readonly bool mainsMeasured;
     private readonly HealthyBank bank;
     private readonly FaultScores scores = new();
@@ -28,6 +35,7 @@ internal sealed class SlowChannel
     private double warmSd = 0.12;
     private double exponent = 0.6;
     private double exponentSd = 0.6;
+    private bool mainsTrusted = true;
 
     public SlowChannel(bool mainsMeasured)
     {
@@ -60,7 +68,8 @@ internal sealed class SlowChannel
     }
 
     /// <summary>Adds one reading that is not in doubt; true if that closed a block.</summary>
-    public bool Add(double seconds, double logAmps, double mains, double whiteSd)
+    /// <param name="mainsNoise">Variance of the mains meter's noise in one reading, relative.</param>
+    public bool Add(double seconds, double logAmps, double mains, double whiteSd, double mainsNoise)
     {
         var closed = false;
         if (double.IsNaN(blockFrom))
@@ -72,7 +81,7 @@ internal sealed class SlowChannel
         {
             if (count > 0)
             {
-                Close(whiteSd);
+                Close(whiteSd, mainsNoise);
                 closed = true;
             }
 
@@ -105,7 +114,7 @@ internal sealed class SlowChannel
         return healthy + Math.Clamp(logAmps - healthy, -clip, clip);
     }
 
-    private void Close(double whiteSd)
+    private void Close(double whiteSd, double mainsNoise)
     {
         var (log, mains) = (sumLog / count, sumMains / count);
         var middle = blockFrom + (BlockSeconds / 2);
@@ -122,7 +131,8 @@ internal sealed class SlowChannel
             lastMiddle = middle;
         }
 
-        bank.Compare(middle - lastMiddle, log, mains, noise);
+        mainsTrusted = mainsNoise / count < MostMainsNoise * MostMainsNoise;
+        bank.Compare(middle - lastMiddle, log, mains, noise, mainsTrusted ? mainsNoise / count : 0);
         scores.Weigh(Model, mains, blockFrom, middle);
         if (bank.Learn(middle, middle - startSeconds, middle - startSeconds < YoungSeconds))
         {
@@ -153,6 +163,17 @@ internal sealed class SlowChannel
 
     /// <summary>When the excess will reach a target, from all rising faults that the readings still allow.</summary>
     public Forecast ForetellExcess(double seconds, double target) => Forecast.Of(scores, seconds, target);
+
+    /// <summary>
+    /// The measured mains has jumped: the readings about it may be of different mains, and what so large a move does to the current is
+    /// to be learned from the next ones, unclipped.
+    /// </summary>
+    public void SkipMainsJump()
+    {
+        DropBlock();
+        anchor = double.NaN;
+        bank.DoubtExponent(mainsTrusted ? FarExponentSd : BlindExponentSd);
+    }
 
     /// <summary>A change has been explained: the model goes on from the new level, and no onset before it counts.</summary>
     public void ShiftLevel(double by)
@@ -193,6 +214,7 @@ internal sealed class SlowChannel
         state.Field(ref warmSd);
         state.Field(ref exponent);
         state.Field(ref exponentSd);
+        state.Field(ref mainsTrusted);
         var armed = Armed;
         state.Field(ref armed);
         Armed = armed;

@@ -35,7 +35,7 @@ public sealed partial class Watch
         var log = Math.Log(Math.Max(o.LineAmps, 1e-6));
         if (!slow.Started || slow.AgeSeconds(seconds) < 3 * SlowChannel.BlockSeconds)
         {
-            slow.Add(seconds, log, mains.Filtered, noise.WhiteSd);
+            slow.Add(seconds, log, mains.Filtered, noise.WhiteSd, mains.NoiseVariance);
             return;
         }
 
@@ -57,7 +57,7 @@ public sealed partial class Watch
         {
             // Filter undone, the unit may be back while the meter's own filter still climbs: such a reading teaches nothing.
             if (FollowExcursion(o, sd) && Math.Abs(log - slow.Foretell(seconds, mains.Filtered)) < 4 * sd
-                && slow.Add(seconds, log, mains.Filtered, noise.WhiteSd))
+                && slow.Add(seconds, log, mains.Filtered, noise.WhiteSd, mains.NoiseVariance))
             {
                 WeighSlow(o);
             }
@@ -78,8 +78,13 @@ public sealed partial class Watch
     /// <summary>Learns from a reading that is not in doubt.</summary>
     private void Accept(in Observation o, double log)
     {
+        if (mains.Jumped)
+        {
+            return;
+        }
+
         noise.Learn(log - slow.Foretell(o.Seconds, mains.Filtered), o.LineAmps);
-        if (slow.Add(o.Seconds, log, mains.Filtered, noise.WhiteSd))
+        if (slow.Add(o.Seconds, log, mains.Filtered, noise.WhiteSd, mains.NoiseVariance))
         {
             WeighSlow(o);
         }
@@ -274,6 +279,11 @@ public sealed partial class Watch
 
     private void WatchMains(double seconds)
     {
+        if (mains.Jumped)
+        {
+            slow.SkipMainsJump();
+        }
+
         if (mains.AwayInARow == 2 && !book.Stands(mainsFinding))
         {
             var percent = (Math.Exp(mains.Departure) - 1) * 100;

@@ -6,7 +6,7 @@ namespace Lampwarden.Analysis.Watching;
 /// </summary>
 public sealed partial class Watch
 {
-    private const int StateVersion = 7;
+    private const int StateVersion = 8;
     private const double LeastSettleSeconds = 5;
     private const double LongGapSeconds = 30;
     private const double SlowInrushSeconds = 4, SlowInrushTimes = 8;

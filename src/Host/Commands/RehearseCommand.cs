@@ -105,7 +105,8 @@ internal sealed class RehearseCommand : CliCommand
             ?? throw new BadInputException($"Scenario '{name}' is neither a file nor one of config/scenarios; looked for {string.Join(", ", places)}.");
     }
 
-    private static MeterOptions MeterFor(RigMeter meter, Scenario scenario)
+    /// <summary>The options by which a simulated meter is read.</summary>
+    internal static MeterOptions MeterFor(RigMeter meter, Scenario scenario)
     {
         var colon = meter.Place.LastIndexOf(':');
         return new MeterOptions

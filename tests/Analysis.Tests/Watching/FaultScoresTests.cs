@@ -27,7 +27,7 @@ public sealed class FaultScoresTests
             onset = block == 400 ? from : onset;
             var value = -0.7 + (block >= 400 ? size * FaultScores.Unit(shape, middle - onset) : 0);
             model.Advance(10);
-            model.Compare(value, 0, Noise);
+            model.Compare(value, 0, Noise, 0);
             scores.Weigh(model, 0, from, middle);
             model.Learn();
         }
@@ -45,7 +45,7 @@ public sealed class FaultScoresTests
         for (var block = 0; block < 8640; block++)
         {
             model.Advance(10);
-            model.Compare(0, 0, 1e-6);
+            model.Compare(0, 0, 1e-6, 0);
             scores.Weigh(model, 0, block * 10.0, (block * 10.0) + 5);
             model.Learn();
         }

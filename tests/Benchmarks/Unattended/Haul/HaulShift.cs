@@ -2,6 +2,7 @@ using System.Globalization;
 using Lampwarden.Acquisition;
 using Lampwarden.Analysis.Lamps;
 using Lampwarden.Analysis.Watching;
+using Lampwarden.Host.Commands;
 using Lampwarden.Host.Configuration;
 using Lampwarden.Host.Recording;
 using Lampwarden.Host.Soaking;
@@ -13,17 +14,19 @@ namespace Lampwarden.Benchmarks.Unattended.Haul;
 
 /// <summary>One bench's share of a shift.</summary>
 /// <param name="Fault">What was scripted.</param>
+/// <param name="Bench">Unit and meter.</param>
+/// <param name="Wanted">One of these had to come; empty: nothing.</param>
 /// <param name="Named">What the watch named at the fault or after it, of any severity.</param>
 /// <param name="Cries">Warnings and critical findings before the fault, or in a run in which nothing should be said.</param>
 /// <param name="Weighed">Polls, with and without a reading, that the soak handed on.</param>
 /// <param name="Stored">Readings and missed polls in the store.</param>
-internal sealed record HaulResult(HaulFault Fault, IReadOnlyList<string> Named, IReadOnlyList<string> Cries, long Weighed, long Stored)
+internal sealed record HaulResult(HaulFault Fault, string Bench, string[] Wanted, IReadOnlyList<string> Named, IReadOnlyList<string> Cries, long Weighed, long Stored)
 {
     /// <summary>A name that was wanted has come, or none was.</summary>
-    public bool IsFound => Fault.Wanted.Length == 0 || Fault.Wanted.Any(Named.Contains);
+    public bool IsFound => Wanted.Length == 0 || Wanted.Any(Named.Contains);
 
     /// <summary>What was said beside the wanted name.</summary>
-    public IEnumerable<string> SecondNames => Fault.Wanted.Length == 0 ? [] : Named.Except(Fault.Wanted);
+    public IEnumerable<string> SecondNames => Wanted.Length == 0 ? [] : Named.Except(Wanted);
 }
 
 /// <summary>A shift of twelve hours on four benches of one host, each with the next fault of the catalogue.</summary>
@@ -40,16 +43,16 @@ internal static class HaulShift
     public static async Task<List<HaulResult>> RunAsync(int shift, string folder, Action<long> atRound)
     {
         using var time = new Lockstep(1 / PerSecond, atRound);
-        var rigs = new List<(SimulatedRig Rig, HaulFault Fault, double At)>();
+        var rigs = new List<(SimulatedRig Rig, HaulFault Fault, Scenario Script, double At)>();
         var plans = new List<BenchPlan>();
         for (var bench = 0; bench < Benches; bench++)
         {
             var number = (shift * Benches) + bench;
-            var fault = HaulFault.Catalogue[number % HaulFault.Catalogue.Length];
-            var at = FaultSeconds(number);
-            var rig = new SimulatedRig(fault.Script(at, number + 1, PerSecond), time, () => new TcpInstrumentPort());
-            rigs.Add((rig, fault, at));
-            plans.Add(Plan(bench, rig));
+            var (fault, at) = (HaulFault.Of(number), FaultSeconds(number));
+            var script = fault.Script(number, at, PerSecond);
+            var rig = new SimulatedRig(script, time, () => new TcpInstrumentPort());
+            rigs.Add((rig, fault, script, at));
+            plans.Add(Plan(bench, rig, script));
         }
 
         var documents = await SoakHost.RunAsync(
@@ -60,12 +63,12 @@ internal static class HaulShift
             foreach (var document in documents)
             {
                 var run = store.Run(document.Run!);
-                var (_, fault, at) = rigs[plans.FindIndex(plan => plan.Name == run.Info.Bench)];
-                results.Add(Weigh(fault, at, document, time.Weighed(run.Info.Bench), run.Info.Readings + run.Gaps.Sum(gap => gap.Polls)));
+                var (_, fault, script, at) = rigs[plans.FindIndex(plan => plan.Name == run.Info.Bench)];
+                results.Add(Weigh(fault, script, at, document, time.Weighed(run.Info.Bench), run.Info.Readings + run.Gaps.Sum(gap => gap.Polls)));
             }
         }
 
-        foreach (var (rig, _, _) in rigs)
+        foreach (var (rig, _, _, _) in rigs)
         {
             await rig.DisposeAsync();
         }
@@ -73,37 +76,40 @@ internal static class HaulShift
         return results;
     }
 
-    private static HaulResult Weigh(HaulFault fault, double atSeconds, SoakDocument document, long weighed, long stored)
+    private static HaulResult Weigh(HaulFault fault, Scenario script, double atSeconds, SoakDocument document, long weighed, long stored)
     {
         // The watch's zero is switch-on, and a reading covers what came before it: four polls of grace.
         var from = fault.Name == "none" ? double.PositiveInfinity : atSeconds - (4 / PerSecond);
         var alarms = document.Findings.Where(finding => finding.Severity != Severity.Notice);
+        var wanted = fault.WantedOf(script.Meter.Dialect);
         return new HaulResult(
             fault,
+            $"{script.Unit}, {script.Meter.Dialect}",
+            wanted,
             [.. document.Findings.Where(finding => finding.RaisedSeconds >= from).Select(finding => finding.Signature.Text()).Distinct()],
-            [.. alarms.Where(finding => (fault.Wanted.Length == 0 || finding.RaisedSeconds < from) && finding.Signature.Text() != fault.May).Select(finding => finding.Signature.Text())],
+            [.. alarms.Where(finding => (wanted.Length == 0 || finding.RaisedSeconds < from) && finding.Signature.Text() != fault.May).Select(finding => finding.Signature.Text())],
             weighed,
             stored);
     }
 
-    private static BenchPlan Plan(int bench, SimulatedRig rig) => BenchPlan.From(
+    private static BenchPlan Plan(int bench, SimulatedRig rig, Scenario script) => BenchPlan.From(
         new BenchOptions
         {
             Name = string.Create(CultureInfo.InvariantCulture, $"bay-{bench + 1}"),
-            Mains = "230 V 50 Hz",
-            Bank = "100 W || 100 W",
-            Unit = "resistor 700 ohm",
-            Meters = [.. rig.Meters.Select(meter => new MeterOptions
-            {
-                Name = meter.Name,
-                Quantity = meter.Quantity == MeasuredQuantity.MainsVoltage ? Quantity.MainsVoltage : Quantity.LineCurrent,
-                ReadingsPerSecond = PerSecond,
-                ReplyTimeoutSeconds = 0.5,
-                Transport = new TransportOptions { Kind = meter.TransportKind, Port = meter.Place.Split(':')[1] },
-            })],
+            Mains = script.Mains,
+            Bank = script.Bank,
+            Unit = script.Unit,
+            Meters = [.. rig.Meters.Select(meter => Impatient(RehearseCommand.MeterFor(meter, script)))],
             Soak = new SoakOptions { PlannedHours = Hours },
         },
         LampInventory.Empty);
+
+    // Patience is real time, and the more of it, the longer the haul.
+    private static MeterOptions Impatient(MeterOptions meter)
+    {
+        meter.ReplyTimeoutSeconds = 0.5;
+        return meter;
+    }
 
     /// <summary>Between the third and the tenth hour, so that there is a baseline before it and time to find it after.</summary>
     private static double FaultSeconds(int number) => 10_800 + (number * 7919 % 25_200);

@@ -34,7 +34,7 @@ internal static class LongHaulCommand
             results.AddRange(ofShift);
             foreach (var result in ofShift.Where(result => !result.IsFound || result.Cries.Count > 0))
             {
-                Console.Error.WriteLine($"shift {shift + 1}, {result.Fault.Label}: false {string.Join(", ", result.Cries)}; named {string.Join(", ", result.Named)}");
+                Console.Error.WriteLine($"shift {shift + 1}, {result.Fault.Label} ({result.Bench}): false {string.Join(", ", result.Cries)}; named {string.Join(", ", result.Named)}");
             }
 
             var between = HeapMegabytes();
@@ -61,11 +61,12 @@ internal static class LongHaulCommand
     {
         Console.WriteLine("\n| scripted | runs | wanted | came | missed | said besides | false alarms |");
         Console.WriteLine("| --- | --: | --- | --: | --: | --- | --- |");
-        foreach (var ofFault in results.GroupBy(result => result.Fault))
+        foreach (var ofFault in results.GroupBy(result => (result.Fault, Wanted: string.Join(" or ", result.Wanted))))
         {
-            var wanted = ofFault.Key.Wanted.Length == 0 ? "nothing" : string.Join(" or ", ofFault.Key.Wanted);
+            var (fault, names) = ofFault.Key;
+            var wanted = names.Length == 0 ? "nothing" : names;
             var missed = ofFault.Count(result => !result.IsFound);
-            Console.WriteLine($"| {ofFault.Key.Label} | {ofFault.Count()} | {wanted} | {ofFault.Count() - missed} | {missed} | {Tally(ofFault.SelectMany(result => result.SecondNames))} | {Tally(ofFault.SelectMany(result => result.Cries))} |");
+            Console.WriteLine($"| {fault.Label} | {ofFault.Count()} | {wanted} | {ofFault.Count() - missed} | {missed} | {Tally(ofFault.SelectMany(result => result.SecondNames))} | {Tally(ofFault.SelectMany(result => result.Cries))} |");
         }
     }
 
