@@ -17,7 +17,6 @@ internal sealed class HealthyModel
     private readonly double[] x = new double[Size];
     private readonly double[] p = new double[Size * Size];
     private readonly double[] gain = new double[Size];
-    private readonly double[] taken = new double[Size]; // by the noise of the measured mains
     private readonly double[] transition = new double[Size]; // the diagonal; the one off-diagonal term stands beside it
     private readonly bool mainsMeasured;
     private double warmByLogTau;
@@ -151,10 +150,7 @@ internal sealed class HealthyModel
     }
 
     /// <summary>Compares with a block: sets the surprise and its variance.</summary>
-    /// <param name="mainsVariance">
-    /// Of the measured mains. A regressor with noise of its own makes an exponent learned from it too small (errors in variables);
-    /// what the noise takes away on average at each step is given back when the block is learned.
-    /// </param>
+    /// <param name="mainsVariance">Of the measured mains: its noise reaches the foretold through the exponent.</param>
     public void Compare(double value, double mains, double noiseVariance, double mainsVariance)
     {
         Surprise = value - Foretell(mains);
@@ -176,7 +172,6 @@ internal sealed class HealthyModel
         for (var i = 0; i < Size; i++)
         {
             gain[i] /= variance;
-            taken[i] = mainsMeasured ? p[(i * Size) + Mains] * x[Mains] * mainsVariance / variance : 0;
         }
     }
 
@@ -185,7 +180,7 @@ internal sealed class HealthyModel
     {
         for (var i = 0; i < Size; i++)
         {
-            x[i] += (gain[i] * Surprise) + taken[i];
+            x[i] += gain[i] * Surprise;
             for (var j = 0; j <= i; j++)
             {
                 var lessened = p[(i * Size) + j] - (gain[i] * gain[j] * SurpriseVariance);
@@ -242,7 +237,6 @@ internal sealed class HealthyModel
         state.Fields(x);
         state.Fields(p);
         state.Fields(gain);
-        state.Fields(taken);
         state.Fields(transition);
         state.Field(ref warmByLogTau);
         state.Field(ref ambientSd);

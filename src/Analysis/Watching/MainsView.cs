@@ -9,10 +9,6 @@ internal sealed class MainsView(double nominalVolts)
 
     private const double LeastReadings = 20, MostReadings = 2000, ClipSds = 4;
 
-    // Of white noise (variance n) on a random walk (q a step), first differences have 2n + q, second ones 6n + 2q: what they tell apart is n.
-    // A little less of it is believed than is seen, because giving back too much would feed on itself.
-    private const double Believed = 0.9;
-
     private double shortMean = double.NaN;
     private double longMean;
     private double lastSeconds;
@@ -48,7 +44,8 @@ internal sealed class MainsView(double nominalVolts)
     /// Variance of the mains meter's own noise for each reading of the line meter, relative: several of those may share one of the mains.
     /// 0 until known.
     /// </summary>
-    public double NoiseVariance => heard < LeastReadings ? 0 : Believed * Math.Max(0, (secondSquares / 2) - firstSquares) * held;
+    // Of white noise (variance n) on a random walk (q a step), first differences have 2n + q, second ones 6n + 2q: what they tell apart is n.
+    public double NoiseVariance => heard < LeastReadings ? 0 : Math.Max(0, (secondSquares / 2) - firstSquares) * held;
 
     /// <summary>Readings in a row for which the mains has stood away by more than a dip's share.</summary>
     public int AwayInARow => awayInARow;

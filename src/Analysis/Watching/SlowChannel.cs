@@ -15,9 +15,10 @@ internal sealed class SlowChannel
     // How far the exponent far off may lie from what small moves of the mains have taught (assumed).
     private const double FarExponentSd = 0.15;
 
-    // Beyond this noise of a block's mains the exponent's bias cannot be made good: giving back what the noise takes would feed on itself.
-    private const double MostMainsNoise = 9e-4;
-    private const double BlindExponentSd = 0.5;
+    // Noise of the mains meter makes an exponent learned from it too small (errors in variables): beyond so much of it in a block's mean it may
+    // be half of what it should be. Giving back what the noise takes was tried, and feeds on itself.
+    private const double NoisyMains = 1.5e-4;
+    private const double NoisyExponentSd = 0.5;
 
     private readonly bool mainsMeasured;
     private readonly HealthyBank bank;
@@ -35,7 +36,7 @@ internal sealed class SlowChannel
     private double warmSd = 0.12;
     private double exponent = 0.6;
     private double exponentSd = 0.6;
-    private bool mainsTrusted = true;
+    private bool mainsIsNoisy;
 
     public SlowChannel(bool mainsMeasured)
     {
@@ -131,8 +132,8 @@ internal sealed class SlowChannel
             lastMiddle = middle;
         }
 
-        mainsTrusted = mainsNoise / count < MostMainsNoise * MostMainsNoise;
-        bank.Compare(middle - lastMiddle, log, mains, noise, mainsTrusted ? mainsNoise / count : 0);
+        mainsIsNoisy = mainsNoise / count > NoisyMains * NoisyMains;
+        bank.Compare(middle - lastMiddle, log, mains, noise, mainsNoise / count);
         scores.Weigh(Model, mains, blockFrom, middle);
         if (bank.Learn(middle, middle - startSeconds, middle - startSeconds < YoungSeconds))
         {
@@ -172,7 +173,7 @@ internal sealed class SlowChannel
     {
         DropBlock();
         anchor = double.NaN;
-        bank.DoubtExponent(mainsTrusted ? FarExponentSd : BlindExponentSd);
+        bank.DoubtExponent(mainsIsNoisy ? NoisyExponentSd : FarExponentSd);
     }
 
     /// <summary>A change has been explained: the model goes on from the new level, and no onset before it counts.</summary>
@@ -214,7 +215,7 @@ internal sealed class SlowChannel
         state.Field(ref warmSd);
         state.Field(ref exponent);
         state.Field(ref exponentSd);
-        state.Field(ref mainsTrusted);
+        state.Field(ref mainsIsNoisy);
         var armed = Armed;
         state.Field(ref armed);
         Armed = armed;

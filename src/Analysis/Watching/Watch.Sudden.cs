@@ -48,7 +48,7 @@ public sealed partial class Watch
         var model = slow.Model;
         var foretold = slow.Foretell(seconds, mains.Now);
         var sd = Math.Sqrt(Math.Max(HeavyTails * noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance + (seconds < gapForgottenSeconds ? gapVariance : 0));
-        var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * mains.Unrest);
+        var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * Math.Max(mains.Unrest, Math.Abs(mains.Departure)));
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);
         WatchStuck(o, Math.Exp(foretold + cycle.Offset));
