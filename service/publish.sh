@@ -14,6 +14,9 @@ for target in "${targets[@]}"; do
   cp service/lampwarden.service service/install-windows.ps1 "$out/service/"
   cp -r config/. "$out/config/"
   cp LICENSE "$out/"
-  (cd publish && find "$target" -type f ! -name SHA256SUMS -print0 | sort -z | xargs -0 sha256sum) > "$out/SHA256SUMS"
+  # The simulator is inside the file; what is left beside it of its own start belongs to no program here.
+  rm -f "$out/Lampwarden.Simulator.runtimeconfig.json"
+  # Names are relative to the folder, so that they can be checked where it was copied to: sha256sum -c SHA256SUMS.
+  (cd "$out" && find . -type f ! -name SHA256SUMS -printf '%P\0' | LC_ALL=C sort -z | xargs -0 sha256sum -- > SHA256SUMS)
   echo "$out: $(du -sh "$out" | cut -f1)"
 done
