@@ -57,8 +57,11 @@ public static class MeterRules
         var protocol = meter.Protocol;
         if (protocol.Kind == "scpi" && protocol.Pattern.Length == 0 && !HasFixedRange(protocol))
         {
-            yield return "no range is set, so the meter ranges by itself: it can be blind for a moment just when the current changes, and miss the inrush. "
-                + "Set one, such as CONFigure:CURRent:AC 3 in protocol.setUp with READ? as the query.";
+            var (loss, setUp) = meter.Quantity == Quantity.LineCurrent
+                ? ("when the current changes, and miss the inrush", "CONFigure:CURRent:AC 3")
+                : ("when the mains changes", "CONFigure:VOLTage:AC 300");
+            yield return $"no range is set, so the meter ranges by itself: it can be blind for a moment just {loss}. "
+                + $"Set one, such as {setUp} in protocol.setUp with READ? as the query.";
         }
 
         if (protocol.Kind == "lines")
