@@ -29,6 +29,7 @@ public sealed class Attendance : IAsyncDisposable
     private readonly MeterProvider? _collector;
     private readonly Telemetry _telemetry;
     private readonly CutOffGuard? _cutOff;
+    private readonly Pulse _pulse;
     private readonly Heart _heart;
     private readonly SettingsReload? _reload;
     private readonly StoreWarden _storeWarden;
@@ -50,20 +51,20 @@ public sealed class Attendance : IAsyncDisposable
         Rules = RouteFactory.Rules(alerts);
         Dispatch = new AlertDispatch(Rules, new ServiceAlertLog(recordFolder), time, logger);
         Dispatch.Use(turned => RouteFactory.Make(alerts, time, logger, turned));
-        var pulse = new Pulse(benches, time);
-        _telemetry = new Telemetry(pulse, store, Dispatch, benches, time);
+        _pulse = new Pulse(benches, time);
+        _telemetry = new Telemetry(_pulse, store, Dispatch, benches, time);
         Metrics = new MetricsText();
         _cutOff = alerts.CutOff is { Outputs.Count: > 0 } options
-            ? new CutOffGuard(options, instance, recordFolder, Dispatch, pulse, unattended.StuckAfterSeconds, time, logger)
+            ? new CutOffGuard(options, instance, recordFolder, Dispatch, _pulse, unattended.StuckAfterSeconds, time, logger)
             : null;
-        Health = new HealthBoard(instance, benches, pulse, unattended.StuckAfterSeconds, store, forwarding, Dispatch, _cutOff, time);
-        _heart = new Heart(unattended, pulse, Dispatch, _manager, time, logger);
+        Health = new HealthBoard(instance, benches, _pulse, unattended.StuckAfterSeconds, store, forwarding, Dispatch, _cutOff, time);
+        _heart = new Heart(unattended, _pulse, Dispatch, _manager, time, logger);
         _storeWarden = new StoreWarden(store, Dispatch, time);
         _reload = order.Path is null ? null : new SettingsReload(order.Path, order.Options, Dispatch, time, logger);
         _collector = unattended.OtlpUrl is { } url
             ? Sdk.CreateMeterProviderBuilder().AddMeter(Telemetry.MeterName).AddOtlpExporter(otlp => (otlp.Endpoint, otlp.Protocol) = (Telemetry.CollectorPath(url), OtlpExportProtocol.HttpProtobuf)).Build()
             : null;
-        Listeners = _cutOff is null ? [pulse, _telemetry] : [_cutOff, pulse, _telemetry];
+        Listeners = _cutOff is null ? [_pulse, _telemetry] : [_cutOff, _pulse, _telemetry];
     }
 
     /// <summary>How alerts live.</summary>
@@ -85,6 +86,7 @@ public sealed class Attendance : IAsyncDisposable
     /// <param name="benches">How many.</param>
     public void Ready(int benches)
     {
+        _pulse.Expect();
         _manager.Ready();
         _manager.Status(FormattableString.Invariant($"watching {benches} bench{(benches == 1 ? "" : "es")}"));
     }

@@ -10,15 +10,18 @@ namespace Lampwarden.Host.Unattended;
 public sealed class Pulse : ISoakListener
 {
     private readonly ConcurrentDictionary<string, long> _beats = new();
+    private readonly IReadOnlyList<string> _benches;
     private readonly TimeProvider _time;
 
-    /// <summary>Expects a first beat of every bench from now on.</summary>
-    public Pulse(IEnumerable<string> benches, TimeProvider time)
+    /// <summary>Expects nothing yet.</summary>
+    public Pulse(IReadOnlyList<string> benches, TimeProvider time) => (_benches, _time) = (benches, time);
+
+    /// <summary>Expects a first beat of every bench from now on: a service that is still starting, on however slow a machine, is not stuck.</summary>
+    public void Expect()
     {
-        _time = time;
-        foreach (var bench in benches)
+        foreach (var bench in _benches)
         {
-            _beats[bench] = time.GetTimestamp();
+            _beats.TryAdd(bench, _time.GetTimestamp());
         }
     }
 

@@ -25,6 +25,7 @@ public sealed class HeartTests : IAsyncDisposable
         Outside.Need(!OperatingSystem.IsWindows(), "there are no datagram sockets with paths");
         _dispatch = new AlertDispatch(new AlertRules(), null, _time, NullLogger.Instance);
         _pulse = new Pulse(["bay-1", "bay-2"], _time);
+        _pulse.Expect();
     }
 
     public async ValueTask DisposeAsync()
@@ -64,6 +65,17 @@ public sealed class HeartTests : IAsyncDisposable
         await Patience.UntilAsync(() => _socket.Feeds >= 28);
         Assert.InRange(_socket.Feeds, 28, 31);
         Assert.Empty(_ends);
+    }
+
+    [Fact]
+    public void Stuck_WhileTheServiceIsStillStarting_NoBench()
+    {
+        var starting = new Pulse(["bay-1"], _time);
+        _time.Advance(TimeSpan.FromMinutes(5));
+        Assert.Empty(starting.Stuck(30));
+        starting.Expect();
+        _time.Advance(TimeSpan.FromSeconds(31));
+        Assert.Equal(["bay-1"], starting.Stuck(30));
     }
 
     [Fact]

@@ -18,6 +18,7 @@ public sealed class MetricsTextTests
     public async Task Write_AfterReadings_CountsThemByResultAndBalances()
     {
         var pulse = new Pulse(["bay-é\"1"], _time);
+        pulse.Expect();
         await using var dispatch = new AlertDispatch(new AlertRules(), null, _time, NullLogger.Instance);
         using var telemetry = new Telemetry(pulse, () => new StoreHealth(7, 5, 2, 1, null, null), dispatch, ["bay-é\"1"], _time);
         using var metrics = new MetricsText();

@@ -19,11 +19,12 @@ public sealed record RunLine(
     double PlannedHours,
     long Readings,
     Verdict? Verdict,
-    int Findings)
+    int Findings,
+    string? ResumedFrom)
 {
     internal static RunLine Of(RunInfo info) => new(
         info.Run, info.Bench, info.Unit, info.UnitLabel, info.Bank, info.Mains, info.StartedUtc, info.EndedUtc,
-        info.LengthSeconds, info.PlannedHours, info.Readings, info.Verdict, info.Findings);
+        info.LengthSeconds, info.PlannedHours, info.Readings, info.Verdict, info.Findings, info.ResumedFrom);
 }
 
 /// <summary>One run with all but its readings.</summary>
@@ -41,6 +42,7 @@ public sealed record RunDocument(
     long Readings,
     long Lost,
     string Software,
+    string? ResumedFrom,
     Verdict? Verdict,
     IReadOnlyList<string> Reasons,
     JsonElement? Summary,
@@ -56,7 +58,7 @@ public sealed record RunDocument(
         var info = record.Info;
         return new(
             info.Run, info.Bench, info.Unit, info.UnitLabel, info.Bank, info.Mains, info.StartedUtc, info.EndedUtc,
-            info.LengthSeconds, info.PlannedHours, info.Readings, info.Lost, info.Software, info.Verdict,
+            info.LengthSeconds, info.PlannedHours, info.Readings, info.Lost, info.Software, info.ResumedFrom, info.Verdict,
             record.Reasons, Parse(record.SummaryJson), Parse(record.PredictionJson),
             [.. record.Findings.Select(FindingEntry.Of)], record.Gaps,
             [.. record.AlertChanges.Select(change => new AlertStep(change.Seconds, change.Utc, change.Alert, change.Transition, change.State, change.By, change.Text))],
