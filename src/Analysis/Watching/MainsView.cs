@@ -5,7 +5,6 @@ internal sealed class MainsView(double nominalVolts)
 {
     private const double ShortSeconds = 30, LongSeconds = 300, UnrestSeconds = 3;
     private const double NewMainsSeconds = 600;
-    private const double JumpShare = 0.03;
 
     private const double LeastReadings = 20, MostReadings = 2000, ClipSds = 4;
 
@@ -14,7 +13,6 @@ internal sealed class MainsView(double nominalVolts)
     private double lastSeconds;
     private int awayInARow;
     private double awaySince = double.NaN;
-    private bool jumpedBefore;
     private double previous = double.NaN;
     private double beforePrevious = double.NaN;
     private double firstSquares;
@@ -35,10 +33,8 @@ internal sealed class MainsView(double nominalVolts)
     /// <summary>Departure from the mean of some minutes: what a dip or a swell is measured by.</summary>
     public double Departure => Now - longMean;
 
-    /// <summary>
-    /// The mains has just jumped: the two meters do not read at one instant, so this reading of the current may belong to another mains.
-    /// </summary>
-    public bool Jumped { get; private set; }
+    /// <summary>How long it has stood away so, s; 0 where it does not.</summary>
+    public double AwaySeconds => double.IsNaN(awaySince) ? 0 : Math.Max(lastSeconds - awaySince, 1e-3);
 
     /// <summary>
     /// Variance of the mains meter's own noise for each reading of the line meter, relative: several of those may share one of the mains.
@@ -52,15 +48,12 @@ internal sealed class MainsView(double nominalVolts)
 
     public void Observe(double seconds, double volts, double pole)
     {
-        var before = Now;
         if (volts > 0 && double.IsFinite(volts))
         {
             Now = Math.Log(volts / nominalVolts);
             LearnNoise();
         }
 
-        var jumps = !double.IsNaN(shortMean) && Math.Abs(Now - before) > JumpShare;
-        (Jumped, jumpedBefore) = (jumps || jumpedBefore, jumps);
 
         if (double.IsNaN(shortMean))
         {
@@ -129,10 +122,6 @@ internal sealed class MainsView(double nominalVolts)
         state.Field(ref heard);
         state.Field(ref held);
         state.Field(ref sinceHeard);
-        state.Field(ref jumpedBefore);
-        var jumped = Jumped;
-        state.Field(ref jumped);
-        Jumped = jumped;
         var (now, filtered, unrest) = (Now, Filtered, Unrest);
         state.Field(ref now);
         state.Field(ref filtered);

@@ -165,15 +165,15 @@ internal sealed class SlowChannel
     /// <summary>When the excess will reach a target, from all rising faults that the readings still allow.</summary>
     public Forecast ForetellExcess(double seconds, double target) => Forecast.Of(scores, seconds, target);
 
-    /// <summary>
-    /// The measured mains has jumped: the readings about it may be of different mains, and what so large a move does to the current is
-    /// to be learned from the next ones, unclipped.
-    /// </summary>
-    public void SkipMainsJump()
+    /// <summary>How far the exponent may lie from what was learned, where the mains has moved far.</summary>
+    public double FarExponentDoubt => mainsIsNoisy ? NoisyExponentSd : FarExponentSd;
+
+    /// <summary>What so far a move of the mains does to the current is to be learned from the next readings, unclipped.</summary>
+    public void LearnFarMains()
     {
         DropBlock();
         anchor = double.NaN;
-        bank.DoubtExponent(mainsIsNoisy ? NoisyExponentSd : FarExponentSd);
+        bank.DoubtExponent(FarExponentDoubt);
     }
 
     /// <summary>A change has been explained: the model goes on from the new level, and no onset before it counts.</summary>

@@ -19,12 +19,16 @@ public sealed partial class Watch
     // Without a mains reading a dip of the mains is a dip of the current: smaller steps must outlast it, and a tap change is none of the unit's business.
     private const double DipShare = 0.2, DipSeconds = 90, TapShare = 0.022;
 
+    // A dip of the mains is waited out so long before its level is taken for the present one.
+    private const double FarMainsSeconds = 60;
+
     private int stepFinding;
     private double stepOffset;
     private int burstFinding;
     private double lastBurstSeconds;
     private int bursts;
     private int mainsFinding;
+    private bool farMainsLearned;
     private bool isReturn;
     private bool excursionJoins;
     private int nextEdges = 4;
@@ -48,7 +52,9 @@ public sealed partial class Watch
         var model = slow.Model;
         var foretold = slow.Foretell(seconds, mains.Now);
         var sd = Math.Sqrt(Math.Max(HeavyTails * noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance + (seconds < gapForgottenSeconds ? gapVariance : 0));
-        var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * Math.Sqrt(model.ExponentVariance) * Math.Max(mains.Unrest, Math.Abs(mains.Departure)));
+        var exponentSd = Math.Sqrt(model.ExponentVariance);
+        exponentSd = IsFreshMains ? Math.Max(exponentSd, slow.FarExponentDoubt) : exponentSd;
+        var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * exponentSd * Math.Max(mains.Unrest, Math.Abs(mains.Departure)));
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);
         WatchStuck(o, Math.Exp(foretold + cycle.Offset));
@@ -57,7 +63,7 @@ public sealed partial class Watch
         {
             // Filter undone, the unit may be back while the meter's own filter still climbs: such a reading teaches nothing.
             if (FollowExcursion(o, sd) && Math.Abs(log - slow.Foretell(seconds, mains.Filtered)) < 4 * sd
-                && slow.Add(seconds, log, mains.Filtered, noise.WhiteSd, mains.NoiseVariance))
+                && !IsFreshMains && slow.Add(seconds, log, mains.Filtered, noise.WhiteSd, mains.NoiseVariance))
             {
                 WeighSlow(o);
             }
@@ -75,11 +81,15 @@ public sealed partial class Watch
         ForgetBursts(seconds);
     }
 
+    private bool IsFreshMains => mains.AwaySeconds is > 0 and < FarMainsSeconds;
+
     /// <summary>Learns from a reading that is not in doubt.</summary>
     private void Accept(in Observation o, double log)
     {
-        if (mains.Jumped)
+        if (IsFreshMains)
         {
+            // A dip: the two meters do not read at one instant, and what so far a move does to the current is not known well.
+            slow.DropBlock();
             return;
         }
 
@@ -279,11 +289,12 @@ public sealed partial class Watch
 
     private void WatchMains(double seconds)
     {
-        if (mains.Jumped)
+        if (!farMainsLearned && mains.AwaySeconds >= FarMainsSeconds)
         {
-            slow.SkipMainsJump();
+            slow.LearnFarMains();
         }
 
+        farMainsLearned = mains.AwaySeconds >= FarMainsSeconds;
         if (mains.AwayInARow == 2 && !book.Stands(mainsFinding))
         {
             var percent = (Math.Exp(mains.Departure) - 1) * 100;
@@ -307,6 +318,7 @@ public sealed partial class Watch
         state.Field(ref lastBurstSeconds);
         state.Field(ref bursts);
         state.Field(ref mainsFinding);
+        state.Field(ref farMainsLearned);
         state.Field(ref isReturn);
         state.Field(ref excursionJoins);
         state.Field(ref nextEdges);
