@@ -13,6 +13,7 @@ internal sealed class MainsView(double nominalVolts)
     private double lastSeconds;
     private int awayInARow;
     private double awaySince = double.NaN;
+    private double heardSeconds = double.NaN;
     private double previous = double.NaN;
     private double beforePrevious = double.NaN;
     private double firstSquares;
@@ -33,6 +34,9 @@ internal sealed class MainsView(double nominalVolts)
     /// <summary>Departure from the mean of some minutes: what a dip or a swell is measured by.</summary>
     public double Departure => Now - longMean;
 
+    /// <summary>How long its meter has said nothing since it last spoke, s; NaN where it never did.</summary>
+    public double SilentSeconds => lastSeconds - heardSeconds;
+
     /// <summary>How long it has stood away so, s; 0 where it does not.</summary>
     public double AwaySeconds => double.IsNaN(awaySince) ? 0 : Math.Max(lastSeconds - awaySince, 1e-3);
 
@@ -51,6 +55,7 @@ internal sealed class MainsView(double nominalVolts)
         if (volts > 0 && double.IsFinite(volts))
         {
             Now = Math.Log(volts / nominalVolts);
+            heardSeconds = seconds;
             LearnNoise();
         }
 
@@ -115,6 +120,7 @@ internal sealed class MainsView(double nominalVolts)
         state.Field(ref lastSeconds);
         state.Field(ref awayInARow);
         state.Field(ref awaySince);
+        state.Field(ref heardSeconds);
         state.Field(ref previous);
         state.Field(ref beforePrevious);
         state.Field(ref firstSquares);

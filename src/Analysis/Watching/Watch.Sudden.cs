@@ -19,6 +19,12 @@ public sealed partial class Watch
     // Without a mains reading a dip of the mains is a dip of the current: smaller steps must outlast it, and a tap change is none of the unit's business.
     private const double DipShare = 0.2, DipSeconds = 90, TapShare = 0.022;
 
+    // After so long without a mains reading the watch goes on by the last one, rather than not at all.
+    private const double SilentMainsSeconds = 15, LongSilentMainsSeconds = 600;
+
+    // By so much it may have moved meanwhile.
+    private const double SilentMainsShare = 0.02;
+
     // A dip of the mains is waited out so long before its level is taken for the present one.
     private const double FarMainsSeconds = 60;
 
@@ -55,6 +61,7 @@ public sealed partial class Watch
         var exponentSd = Math.Sqrt(model.ExponentVariance);
         exponentSd = IsFreshMains ? Math.Max(exponentSd, slow.FarExponentDoubt) : exponentSd;
         var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * exponentSd * Math.Max(mains.Unrest, Math.Abs(mains.Departure)));
+        extra += mains.SilentSeconds > SilentMainsSeconds ? SilentMainsShare * Math.Abs(model.Exponent) : 0;
         var trendNow = trend.At(seconds);
         var offset = double.IsNaN(trendNow) ? 0 : trendNow - Math.Clamp(trendNow, -TrendIgnored, TrendIgnored);
         WatchStuck(o, Math.Exp(foretold + cycle.Offset));
@@ -86,9 +93,10 @@ public sealed partial class Watch
     /// <summary>Learns from a reading that is not in doubt.</summary>
     private void Accept(in Observation o, double log)
     {
-        if (IsFreshMains)
+        if (IsFreshMains || mains.SilentSeconds is > SilentMainsSeconds and < LongSilentMainsSeconds)
         {
-            // A dip: the two meters do not read at one instant, and what so far a move does to the current is not known well.
+            // A dip: the two meters do not read at one instant, and what so far a move does to the current is not known well. Or a mains meter
+            // that says nothing for a while: what the mains does meanwhile would be laid on the unit.
             slow.DropBlock();
             return;
         }

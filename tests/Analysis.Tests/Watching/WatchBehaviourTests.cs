@@ -51,6 +51,17 @@ public sealed class WatchBehaviourTests
     }
 
     [Theory]
+    [InlineData(0.2)]
+    [InlineData(2)]
+    public void Observe_MainsMeterSilentForAMinute_WhatTheMainsDidMeanwhileIsNoFault(double rate)
+    {
+        var watch = new Watch(new WatchSettings { ReadingsPerSecond = rate, MainsMeasured = true });
+        static double Mains(double t) => 1 + (0.004 * Math.Sin(t / 700)) + (0.012 * Math.Clamp((t - 15_000) / 30, 0, 1));
+        watch.Feed(Series.Of(20_000, t => 0.3 * Math.Pow(Mains(t), 0.8), noiseShare: 0.001, volts: t => t is > 14_990 and < 15_050 ? double.NaN : 230 * Mains(t), rate: rate));
+        Assert.Empty(watch.Findings);
+    }
+
+    [Theory]
     [InlineData(2, 0.87, 0.0005)]
     [InlineData(2, -0.9, 0.001)]
     [InlineData(2, 0.87, 0.003)]
