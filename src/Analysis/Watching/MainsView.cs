@@ -37,6 +37,9 @@ internal sealed class MainsView(double nominalVolts)
     /// <summary>How long its meter has said nothing since it last spoke, s; NaN where it never did.</summary>
     public double SilentSeconds => lastSeconds - heardSeconds;
 
+    /// <summary>When it last read otherwise than before: a slower meter than that of the current gives one reading with several of those.</summary>
+    public double ChangedSeconds { get; private set; }
+
     /// <summary>How long it has stood away so, s; 0 where it does not.</summary>
     public double AwaySeconds => double.IsNaN(awaySince) ? 0 : Math.Max(lastSeconds - awaySince, 1e-3);
 
@@ -56,7 +59,7 @@ internal sealed class MainsView(double nominalVolts)
         {
             Now = Math.Log(volts / nominalVolts);
             heardSeconds = seconds;
-            LearnNoise();
+            LearnNoise(seconds);
         }
 
 
@@ -85,13 +88,15 @@ internal sealed class MainsView(double nominalVolts)
         }
     }
 
-    private void LearnNoise()
+    private void LearnNoise(double seconds)
     {
         sinceHeard++;
         if (Now == previous)
         {
             return; // the same reading, given with another of the current
         }
+
+        ChangedSeconds = seconds;
 
         var share = 1 / Math.Min(heard + 1, MostReadings);
         held += (sinceHeard - held) * share;
@@ -121,6 +126,9 @@ internal sealed class MainsView(double nominalVolts)
         state.Field(ref awayInARow);
         state.Field(ref awaySince);
         state.Field(ref heardSeconds);
+        var changed = ChangedSeconds;
+        state.Field(ref changed);
+        ChangedSeconds = changed;
         state.Field(ref previous);
         state.Field(ref beforePrevious);
         state.Field(ref firstSquares);

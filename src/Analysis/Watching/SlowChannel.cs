@@ -12,13 +12,10 @@ internal sealed class SlowChannel
     private const double YoungExtra = 4;
     private const double LearningExcess = 0.03;
 
-    // How far the exponent far off may lie from what small moves of the mains have taught (assumed).
-    private const double FarExponentSd = 0.15;
-
-    // Noise of the mains meter makes an exponent learned from it too small (errors in variables): beyond so much of it in a block's mean it may
-    // be half of what it should be. Giving back what the noise takes was tried, and feeds on itself.
-    private const double NoisyMains = 1.5e-4;
-    private const double NoisyExponentSd = 0.5;
+    // How far the exponent may lie from what small moves of the mains have taught, where it has moved far (assumed). The mains meter's noise
+    // makes a learned exponent too small (errors in variables), by half and more where the mains hardly moves. Giving back what the noise
+    // takes was tried, and feeds on itself.
+    public const double FarExponentSd = 0.5;
 
     private readonly bool mainsMeasured;
     private readonly HealthyBank bank;
@@ -36,7 +33,6 @@ internal sealed class SlowChannel
     private double warmSd = 0.12;
     private double exponent = 0.6;
     private double exponentSd = 0.6;
-    private bool mainsIsNoisy;
 
     public SlowChannel(bool mainsMeasured)
     {
@@ -132,7 +128,6 @@ internal sealed class SlowChannel
             lastMiddle = middle;
         }
 
-        mainsIsNoisy = mainsNoise / count > NoisyMains * NoisyMains;
         bank.Compare(middle - lastMiddle, log, mains, noise, mainsNoise / count);
         scores.Weigh(Model, mains, blockFrom, middle);
         if (bank.Learn(middle, middle - startSeconds, middle - startSeconds < YoungSeconds))
@@ -165,15 +160,12 @@ internal sealed class SlowChannel
     /// <summary>When the excess will reach a target, from all rising faults that the readings still allow.</summary>
     public Forecast ForetellExcess(double seconds, double target) => Forecast.Of(scores, seconds, target);
 
-    /// <summary>How far the exponent may lie from what was learned, where the mains has moved far.</summary>
-    public double FarExponentDoubt => mainsIsNoisy ? NoisyExponentSd : FarExponentSd;
-
     /// <summary>What so far a move of the mains does to the current is to be learned from the next readings, unclipped.</summary>
     public void LearnFarMains()
     {
         DropBlock();
         anchor = double.NaN;
-        bank.DoubtExponent(FarExponentDoubt);
+        bank.DoubtExponent(FarExponentSd);
     }
 
     /// <summary>A change has been explained: the model goes on from the new level, and no onset before it counts.</summary>
@@ -215,7 +207,6 @@ internal sealed class SlowChannel
         state.Field(ref warmSd);
         state.Field(ref exponent);
         state.Field(ref exponentSd);
-        state.Field(ref mainsIsNoisy);
         var armed = Armed;
         state.Field(ref armed);
         Armed = armed;

@@ -59,7 +59,7 @@ public sealed partial class Watch
         var foretold = slow.Foretell(seconds, mains.Now);
         var sd = Math.Sqrt(Math.Max(HeavyTails * noise.WhiteSd * noise.WhiteSd, LeastSd * LeastSd) + model.ForetoldVariance + (seconds < gapForgottenSeconds ? gapVariance : 0));
         var exponentSd = Math.Sqrt(model.ExponentVariance);
-        exponentSd = IsFreshMains ? Math.Max(exponentSd, slow.FarExponentDoubt) : exponentSd;
+        exponentSd = IsFreshMains ? Math.Max(exponentSd, SlowChannel.FarExponentSd) : exponentSd;
         var extra = (0.15 * Math.Max(0, mains.Unrest - 0.008)) + (2 * exponentSd * Math.Max(mains.Unrest, Math.Abs(mains.Departure)));
         extra += mains.SilentSeconds > SilentMainsSeconds ? SilentMainsShare * Math.Abs(model.Exponent) : 0;
         var trendNow = trend.At(seconds);
@@ -69,7 +69,7 @@ public sealed partial class Watch
         if (excursion.Active)
         {
             // Filter undone, the unit may be back while the meter's own filter still climbs: such a reading teaches nothing.
-            if (FollowExcursion(o, sd) && Math.Abs(log - slow.Foretell(seconds, mains.Filtered)) < 4 * sd
+            if (FollowExcursion(o, sd, IsFreshMains ? extra : 0) && Math.Abs(log - slow.Foretell(seconds, mains.Filtered)) < 4 * sd
                 && !IsFreshMains && slow.Add(seconds, log, mains.Filtered, noise.WhiteSd, mains.NoiseVariance))
             {
                 WeighSlow(o);
@@ -122,7 +122,8 @@ public sealed partial class Watch
         nextEdges = 4;
         excursion.Begin(onset, o.Seconds, sudden.Jump, sd);
         isReturn = stepOffset != 0 && Math.Abs(Math.Log(Math.Max(1 + sudden.Jump, 0.01)) + stepOffset) < 0.3 * Math.Abs(stepOffset);
-        var mayBeMains = !settings.MainsMeasured && Math.Abs(sudden.Jump) < DipShare;
+        // A mains reading from before the change says nothing about it: a slower mains meter shows a dip when the current has long followed it.
+        var mayBeMains = Math.Abs(sudden.Jump) < DipShare && (!settings.MainsMeasured || mains.ChangedSeconds <= onset);
         if (!isReturn && !mayBeMains)
         {
             RaiseExcursion(o, cry == SuddenCry.Burst ? Signature.Intermittent : StepSignature(sudden.Jump));
@@ -165,9 +166,11 @@ public sealed partial class Watch
     }
 
     /// <summary>Takes one reading of an excursion; true if it may be learned from.</summary>
-    private bool FollowExcursion(in Observation o, double sd)
+    /// <param name="allowed">How far it may be off for the sake of a mains that has just moved, relative.</param>
+    private bool FollowExcursion(in Observation o, double sd, double allowed)
     {
-        var healthy = excursion.Follow(o.Seconds, sudden.Jump);
+        var left = Math.Max(0, Math.Abs(sudden.Jump) - allowed) * Math.Sign(sudden.Jump);
+        var healthy = excursion.Follow(o.Seconds, left);
         if (excursion.Climbs && !isReturn)
         {
             ConfirmClimb(o);
@@ -300,6 +303,13 @@ public sealed partial class Watch
         if (!farMainsLearned && mains.AwaySeconds >= FarMainsSeconds)
         {
             slow.LearnFarMains();
+            if (excursion.Active && excursion.Number == 0)
+            {
+                // What was taken for a change may be what the mains does to this unit: now it is learned.
+                excursion.End();
+                sudden.Reset();
+                trend.Restart();
+            }
         }
 
         farMainsLearned = mains.AwaySeconds >= FarMainsSeconds;

@@ -51,6 +51,20 @@ public sealed class WatchBehaviourTests
     }
 
     [Theory]
+    [InlineData(5, 1)]
+    [InlineData(2, 2)]
+    [InlineData(10, 3)]
+    public void Observe_MainsStepSeenLateByASlowerMainsMeter_IsNoFaultOfTheUnit(double rate, double mainsEverySeconds)
+    {
+        var watch = new Watch(new WatchSettings { ReadingsPerSecond = rate, MainsMeasured = true });
+        static double Mains(double t) => (1 + (0.004 * Math.Sin(t / 700))) * (t < 9000.3 ? 1 : 0.88);
+        double Shown(double t) => 230 * Mains(Math.Floor(t / mainsEverySeconds) * mainsEverySeconds) * (1 + (0.0003 * Math.Sin(Math.Floor(t / mainsEverySeconds) * 5)));
+        watch.Feed(Series.Of(10_000, t => 0.3 * Math.Pow(Mains(t), 0.8), noiseShare: 0.001, volts: Shown, rate: rate));
+        Assert.All(watch.Findings, finding => Assert.Equal(Signature.MainsShift, finding.Signature));
+        Assert.NotEmpty(watch.Findings);
+    }
+
+    [Theory]
     [InlineData(0.2)]
     [InlineData(2)]
     public void Observe_MainsMeterSilentForAMinute_WhatTheMainsDidMeanwhileIsNoFault(double rate)
