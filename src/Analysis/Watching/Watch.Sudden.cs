@@ -123,7 +123,7 @@ public sealed partial class Watch
         excursion.Begin(onset, o.Seconds, sudden.Jump, sd);
         isReturn = stepOffset != 0 && Math.Abs(Math.Log(Math.Max(1 + sudden.Jump, 0.01)) + stepOffset) < 0.3 * Math.Abs(stepOffset);
         // A mains reading from before the change says nothing about it: a slower mains meter shows a dip when the current has long followed it.
-        var mayBeMains = Math.Abs(sudden.Jump) < DipShare && (!settings.MainsMeasured || (cry != SuddenCry.Burst && mains.ChangedSeconds <= onset));
+        var mayBeMains = Math.Abs(sudden.Jump) < DipShare && (!settings.MainsMeasured || (settings.MainsIsSlower && cry != SuddenCry.Burst && mains.ChangedSeconds <= onset));
         if (!isReturn && !mayBeMains)
         {
             RaiseExcursion(o, cry == SuddenCry.Burst ? Signature.Intermittent : StepSignature(sudden.Jump));

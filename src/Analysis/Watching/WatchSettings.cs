@@ -12,6 +12,12 @@ public sealed record WatchSettings
     /// <summary>Whether observations carry the mains voltage. Without it creep is found 3 to 5 times later.</summary>
     public bool MainsMeasured { get; init; }
 
+    /// <summary>Nominal rate of the mains meter, per second; null: a reading of its own with each of the current.</summary>
+    public double? MainsReadingsPerSecond { get; init; }
+
+    /// <summary>Whether several readings of the current share one of the mains, so that the current shows a dip before the mains does.</summary>
+    internal bool MainsIsSlower => MainsReadingsPerSecond < 0.8 * ReadingsPerSecond;
+
     /// <summary>Length of the soak in hours; null where none was planned (the judgement then asks for no length).</summary>
     public double? PlannedHours { get; init; }
 
@@ -31,6 +37,7 @@ public sealed record WatchSettings
         var faults = new List<string>();
         Check(faults, nameof(ReadingsPerSecond), ReadingsPerSecond, 0.2, 100);
         Check(faults, nameof(NominalMainsVolts), NominalMainsVolts, 50, 500);
+        Check(faults, nameof(MainsReadingsPerSecond), MainsReadingsPerSecond ?? 1, 0.001, 1000);
         Check(faults, nameof(PlannedHours), PlannedHours ?? 1, 0.001, 10_000);
         Check(faults, nameof(Acceptance.SteadyWithinPercent), Acceptance.SteadyWithinPercent, 0.1, 1000);
         Check(faults, nameof(Acceptance.LeastCoverageShare), Acceptance.LeastCoverageShare, 0, 1);

@@ -76,6 +76,7 @@ public sealed class BenchPlan
             ReadingsPerSecond = Math.Clamp(line.ReadingsPerSecond, 0.2, 100),
             NominalMainsVolts = mains.Volts,
             MainsMeasured = mainsMeter is not null,
+            MainsReadingsPerSecond = mainsMeter?.ReadingsPerSecond,
             PlannedHours = options.Soak.PlannedHours,
             Acceptance = new AcceptanceLimits(options.Soak.Acceptance.SteadyWithinPercent, 1 - options.Soak.Acceptance.GapsAtMostPercent / 100),
             Meter = new MeterTraits(line.WindowSeconds, line.Accuracy.PercentOfReading, line.Accuracy.Counts, line.Accuracy.CountSize, line.Coupling == "ac"),

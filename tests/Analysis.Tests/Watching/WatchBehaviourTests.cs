@@ -56,7 +56,7 @@ public sealed class WatchBehaviourTests
     [InlineData(10, 3)]
     public void Observe_MainsStepSeenLateByASlowerMainsMeter_IsNoFaultOfTheUnit(double rate, double mainsEverySeconds)
     {
-        var watch = new Watch(new WatchSettings { ReadingsPerSecond = rate, MainsMeasured = true });
+        var watch = new Watch(new WatchSettings { ReadingsPerSecond = rate, MainsMeasured = true, MainsReadingsPerSecond = 1 / mainsEverySeconds });
         static double Mains(double t) => (1 + (0.004 * Math.Sin(t / 700))) * (t < 9000.3 ? 1 : 0.88);
         double Shown(double t) => 230 * Mains(Math.Floor(t / mainsEverySeconds) * mainsEverySeconds) * (1 + (0.0003 * Math.Sin(Math.Floor(t / mainsEverySeconds) * 5)));
         watch.Feed(Series.Of(10_000, t => 0.3 * Math.Pow(Mains(t), 0.8), noiseShare: 0.001, volts: Shown, rate: rate));
