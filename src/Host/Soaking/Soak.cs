@@ -13,7 +13,7 @@ namespace Lampwarden.Host.Soaking;
 /// One soak on one bench, from waiting for switch-on to the verdict: meter events become observations, which are
 /// recorded, weighed by the watch, and turned into alerts, in this order. One loop owns all of it.
 /// </summary>
-public sealed class Soak
+public sealed partial class Soak
 {
     private const double ReopeningSeconds = 10;
 
@@ -108,54 +108,6 @@ public sealed class Soak
     /// <summary>How the meters are doing. Safe from any thread.</summary>
     public IReadOnlyList<(MeterOptions Meter, MeterHealth Health)> Meters => _meters.Health;
 
-    /// <summary>Somebody does something about an alert. Safe from any thread; carried out by the soak's loop.</summary>
-    /// <param name="decision">Given the book and the seconds of the run.</param>
-    /// <returns>The change; null where there was nothing to change, or the soak is over.</returns>
-    public Task<AlertChange?> DecideAsync(Func<AlertBook, double, AlertChange?> decision) => AskAsync(soak =>
-    {
-        var change = decision(soak._alerts, soak._ledger.LastSeconds);
-        soak.Publish(change);
-        return change;
-    });
-
-    /// <summary>
-    /// Somebody changed something on the bench: the watch is told, and a note of the run says so. Safe from any thread;
-    /// carried out by the soak's loop, which does not wait for the note.
-    /// </summary>
-    /// <returns>False where no run is under way.</returns>
-    public async Task<bool> AnnounceAsync(Announcement what)
-    {
-        var noted = await AskAsync(soak =>
-        {
-            if (soak._recorder is null)
-            {
-                return null;
-            }
-
-            soak.Announce(what);
-            return soak.NoteAsync(AnnouncementWords.Note(what), soak._ledger.LastSeconds);
-        });
-        if (noted is null)
-        {
-            return false;
-        }
-
-        await noted;
-        return true;
-    }
-
-    /// <summary>The next lamp of the bring-up is in, whatever the current says; or the bring-up is left as it is.</summary>
-    /// <returns>False where there is no such step.</returns>
-    public Task<bool> AdvanceBringUpAsync(bool leave) => AskAsync(soak =>
-        soak._recorder is not null && soak._bringUp is { } bringUp && soak.Follow(leave ? bringUp.Leave() : bringUp.Confirm(soak._ledger.LastSeconds)));
-
-    private async Task<T?> AskAsync<T>(Func<Soak, T> work)
-    {
-        var answer = new TaskCompletionSource<T?>(TaskCreationOptions.RunContinuationsAsynchronously);
-        var asked = _inputs.Writer.TryWrite(new SoakInput(null, default, soak => answer.TrySetResult(work(soak))));
-        return asked ? await answer.Task : default;
-    }
-
     /// <returns>False when the planned time is over.</returns>
     private async ValueTask<bool> TakeAsync(SoakInput input, CancellationToken stop)
     {
@@ -235,47 +187,6 @@ public sealed class Soak
         }
 
         return true;
-    }
-
-    /// <summary>Page, routes and cut-off have been told nothing yet of what was found before the service was left off.</summary>
-    private void TellWhatStands()
-    {
-        foreach (var finding in _ledger.Watch.Findings.Where(finding => finding.ClearedSeconds is null))
-        {
-            Tell(new FindingChanged(_plan.Name, _ledger.LastSeconds, new FindingChange(ChangeKind.Amended, finding)));
-        }
-
-        foreach (var alert in _alerts.Alerts.Where(alert => alert.IsOpen))
-        {
-            Publish(new AlertChange(_ledger.LastSeconds, AlertSteps.CarriedOn, alert));
-        }
-    }
-
-    /// <summary>Sets the clock and the watch to where the earlier run was left off.</summary>
-    /// <returns>Seconds of its last entry.</returns>
-    private double CarryOn(SoakResumption resumption, in BenchLook look)
-    {
-        var leftOff = resumption.Replay(_ledger);
-        resumption.TakeOver(_alerts, _ledger);
-        // The monotonic clock does not outlive the process. A wall clock set back must not make the soak's time go backwards.
-        var nowSeconds = Math.Max(leftOff + _plan.LineMeter.WindowSeconds, (look.Utc - resumption.StartedUtc).TotalSeconds);
-        _originSeconds = look.ElapsedSeconds - nowSeconds;
-        _excusedUntilSeconds = nowSeconds + ReopeningSeconds;
-        return leftOff;
-    }
-
-    /// <summary>The watch sees the service's own absence as a silent meter; it is put on record as what it was, and wakes nobody.</summary>
-    private IReadOnlyList<FindingChange> Excuse(IReadOnlyList<FindingChange> changes)
-    {
-        if (changes.Count == 0 || !(_ledger.LastSeconds < _excusedUntilSeconds))
-        {
-            return changes;
-        }
-
-        return [.. changes.Select(change => change.Finding.Signature != Signature.MeterSilent ? change : change with
-        {
-            Finding = change.Finding with { Severity = Severity.Notice, Explanation = "The service itself did not run, so nothing was watched: see the gap." },
-        })];
     }
 
     private void Observe(in LineReading kept, in BenchLook look)
