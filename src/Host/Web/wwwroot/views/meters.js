@@ -1,36 +1,18 @@
 // The meters: whether they answer, how fast, how evenly, and what was refused and why.
 
-import { h, problemBox } from "../pieces/dom.js";
+import { cardsView } from "../pieces/cards.js";
+import { h } from "../pieces/dom.js";
 import { badge } from "../pieces/shapes.js";
-import { get } from "../live/api.js";
 import { count, isNumber, span, withUnit } from "../model/numbers.js";
 import { gapWord } from "../model/words.js";
 
 const QUANTITIES = { "line-current": "line current", "mains-voltage": "mains", lineCurrent: "line current", mainsVoltage: "mains" };
 
-export function metersView() {
-  const body = h("div", { class: "cards" });
-  const node = h("div", { class: "stack" }, h("h1", {}, "Meters"), body);
-  let open = true;
-  let drawn = "";
-
-  async function ask() {
-    const meters = await get("/api/meters");
-    const key = JSON.stringify(meters);
-    if (open && key !== drawn) {
-      drawn = key;
-      body.replaceChildren(...(meters.length ? meters.map(card) : [h("p", {}, "No meter is open.")]));
-    }
-  }
-
-  const again = () => ask().catch((error) => body.replaceChildren(problemBox(error)));
-  again();
-  const timer = setInterval(again, 2000);
-  return { node, title: "Meters", follows: null, update() {}, standsFor: () => null, close() {
-    open = false;
-    clearInterval(timer);
-  } };
-}
+export const metersView = () => cardsView({
+  title: "Meters",
+  path: "/api/meters",
+  cards: (meters) => (meters.length ? meters.map(card) : [h("p", {}, "No meter is open.")]),
+});
 
 function card(meter) {
   const refused = Object.entries(meter.gaps ?? {});

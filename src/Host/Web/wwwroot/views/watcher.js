@@ -1,8 +1,9 @@
 // The watcher itself: whether it watches, whom it can tell, whether the record is kept, and the cut-offs.
 
-import { act, h, problemBox } from "../pieces/dom.js";
+import { cardsView } from "../pieces/cards.js";
+import { act, h } from "../pieces/dom.js";
 import { badge } from "../pieces/shapes.js";
-import { get, post } from "../live/api.js";
+import { post } from "../live/api.js";
 import { count, span } from "../model/numbers.js";
 import { wallTime } from "../model/words.js";
 
@@ -10,30 +11,12 @@ const STATUS = { ok: ["watching", "All is in order"], degraded: ["warning", "Som
 const ROUTES = { working: ["watching", "Works"], failing: ["warning", "Fails, is tried again"], down: ["critical", "Down"] };
 const CUT_OFFS = { armed: ["watching", "Armed"], tripped: ["critical", "Opened by a finding"], lapsed: ["warning", "Opened by silence"] };
 
-export function watcherView() {
-  const body = h("div", { class: "cards" });
-  const node = h("div", { class: "stack" }, h("h1", {}, "Watcher"), body);
-  let open = true;
-  let drawn = "";
-
-  async function ask() {
-    const report = await get("/api/watcher");
-    // The time of asking and the seconds since a reading change each time: neither is worth a new drawing.
-    const key = JSON.stringify(report, (name, value) => (name === "utc" || name === "silentSeconds" || name === "lastCommitUtc" ? undefined : value));
-    if (open && key !== drawn) {
-      drawn = key;
-      body.replaceChildren(...(report ? sections(report) : [h("p", {}, "This service has nobody to tell and nothing to cut off: a rehearsal, or a page on its own.")]));
-    }
-  }
-
-  const again = () => ask().catch((error) => body.replaceChildren(problemBox(error)));
-  again();
-  const timer = setInterval(again, 2000);
-  return { node, title: "Watcher", follows: null, update() {}, standsFor: () => null, close() {
-    open = false;
-    clearInterval(timer);
-  } };
-}
+export const watcherView = () => cardsView({
+  title: "Watcher",
+  path: "/api/watcher",
+  passing: ["utc", "silentSeconds", "lastCommitUtc"],
+  cards: (report) => (report ? sections(report) : [h("p", {}, "This service has nobody to tell and nothing to cut off: a rehearsal, or a page on its own.")]),
+});
 
 const sections = (report) => [whole(report), record(report), ...report.routes.map(route), ...report.cutOffs.map(cutOff)];
 
